@@ -1,0 +1,1 @@
+"""The typed model: frozen, slotted, keyword-only values; standard library and numpy only."""

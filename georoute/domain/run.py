@@ -1,0 +1,64 @@
+"""How hard to search, and the two callables a caller hands in to watch and to stop it."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Protocol
+
+__all__ = ["EFFORTS", "Effort", "Progress", "ShouldStop", "never_stop", "no_progress"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Effort:
+    """The budget of a search.
+
+    The default budget is counted in iterations, so that the same inputs give the same plan.
+    ``seconds`` is the user's choice of a wall-clock limit on top; a plan that ends on it says so.
+    """
+
+    name: str
+    kicks_per_stop: int
+    relocation_rounds: int
+    seconds: float | None = None
+
+
+EFFORTS: dict[str, Effort] = {
+    "quick": Effort(name="quick", kicks_per_stop=20, relocation_rounds=20),
+    "normal": Effort(name="normal", kicks_per_stop=200, relocation_rounds=100),
+    "thorough": Effort(name="thorough", kicks_per_stop=5_000, relocation_rounds=1_000),
+}
+
+
+class Progress(Protocol):
+    """Called often during long work; must return quickly.
+
+    ``fraction`` is the share of the stage done, 0 to 1; ``cost`` and ``best_cost`` are money.
+    """
+
+    def __call__(
+        self,
+        stage: str,
+        *,
+        fraction: float,
+        cost: float | None = None,
+        best_cost: float | None = None,
+    ) -> None:
+        """Take one report of progress."""
+
+
+class ShouldStop(Protocol):
+    """Asked often during long work; true means: end now with the best found so far."""
+
+    def __call__(self) -> bool:
+        """Tell whether the caller wants the search to end."""
+
+
+def no_progress(
+    stage: str, *, fraction: float, cost: float | None = None, best_cost: float | None = None
+) -> None:
+    """Ignore a report of progress."""
+
+
+def never_stop() -> bool:
+    """Never ask the search to end."""
+    return False

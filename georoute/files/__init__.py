@@ -1,0 +1,1 @@
+"""Files: atomic writes, hashes, cache folder, tables in and out."""

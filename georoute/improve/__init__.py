@@ -1,0 +1,1 @@
+"""Days together: move visits between the tours of a plan."""

@@ -1,0 +1,1 @@
+"""Compiled loops: arrays and scalars only; the one place that knows numba."""

@@ -1,0 +1,1 @@
+"""Places to a cost matrix: seconds and metres of every leg."""

@@ -1,0 +1,1 @@
+"""Pages for browsers and paper, made from a plan."""

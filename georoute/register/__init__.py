@@ -1,0 +1,1 @@
+"""Read and check the register and the programme file."""

@@ -1,0 +1,1 @@
+"""Order within a day."""

@@ -1,0 +1,1 @@
+"""Sites to days: the first split."""

@@ -1,0 +1,1 @@
+"""The plan file: a GeoPackage that opens in any GIS."""

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-__all__ = ["CostMatrix", "Tariff"]
+__all__ = ["CostMatrix", "Places", "Tariff"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -42,3 +42,15 @@ class CostMatrix:
     estimated: bool
     low_factor: float = 1.0
     high_factor: float = 1.0
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Places:
+    """The places travel is measured between: ids and WGS 84 degrees.
+
+    ``lat_deg`` and ``lon_deg`` are float64 arrays of shape (n,).
+    """
+
+    ids: tuple[str, ...]
+    lat_deg: NDArray[np.float64]
+    lon_deg: NDArray[np.float64]

@@ -7,11 +7,14 @@ from a programme and a register, or directly by anyone who has arrays (benchmark
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
-from numpy.typing import NDArray
 
-from georoute.kernels.arrays import Shifts, Travel, Visits
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from georoute.kernels.arrays import Shifts, Travel, Visits
 
 __all__ = ["Problem", "Solution"]
 

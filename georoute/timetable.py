@@ -1,0 +1,158 @@
+"""Clock times of a solution: the typed face of the tour clock."""
+
+from __future__ import annotations
+
+from datetime import timedelta
+from typing import TYPE_CHECKING
+from zoneinfo import ZoneInfo
+
+import numpy as np
+
+from georoute.domain.plan import DayTour, Leg, Stop
+from georoute.kernels.arrays import leg_mm, leg_ms
+from georoute.kernels.clock import clock_tour, latest_arrivals, time_tour, tour_cost
+
+if TYPE_CHECKING:
+    from datetime import datetime
+
+    from numpy.typing import NDArray
+
+    from georoute.kernels.clock import TourTimes
+    from georoute.problem import Packed, Problem, Solution
+
+__all__ = ["is_feasible", "order_cost", "solution_cost", "tours_of"]
+
+MICRO = 1_000_000
+
+
+def order_cost(problem: Problem, shift: int, order: NDArray[np.int64]) -> int:
+    """Return the money (micro-units) of one shift's order; 0 where it has no stop."""
+    if order.shape[0] == 0:
+        return 0
+    times = time_tour(problem.travel, problem.visits, problem.shifts, shift, order)
+    return int(tour_cost(problem.shifts, shift, times))
+
+
+def solution_cost(problem: Problem, solution: Solution) -> int:
+    """Return the money (micro-units) of all tours, without the worth of what is left out."""
+    return sum(order_cost(problem, s, order) for s, order in enumerate(solution.orders))
+
+
+def is_feasible(problem: Problem, shift: int, order: NDArray[np.int64]) -> bool:
+    """Tell whether an order keeps windows, the shift, its longest duration and its load."""
+    times = time_tour(problem.travel, problem.visits, problem.shifts, shift, order)
+    allowed = bool(problem.visits.eligible[order, shift].all())
+    return allowed and times.late_ms == 0 and times.excess_ms == 0 and times.over_load == 0
+
+
+class _Clock:
+    """Turns kernel milliseconds into aware datetimes of the programme's zone."""
+
+    def __init__(self, packed: Packed) -> None:
+        self.zone = ZoneInfo(packed.programme.zone)
+        self.epoch_utc = packed.programme.epoch.astimezone(ZoneInfo("UTC"))
+
+    def __call__(self, instant_ms: int) -> datetime:
+        return (self.epoch_utc + timedelta(milliseconds=int(instant_ms))).astimezone(self.zone)
+
+
+def _stops(
+    packed: Packed,
+    order: NDArray[np.int64],
+    instants: NDArray[np.int64],
+    clock: _Clock,
+) -> tuple[Stop, ...]:
+    arrive, start, latest = instants
+    stops = []
+    for k, v in enumerate(order):
+        visit = packed.visits[v]
+        leave = int(start[k]) + int(packed.problem.visits.work_ms[v])
+        stops.append(
+            Stop(
+                visit_id=visit.visit_id,
+                site_id=visit.site_id,
+                order=k + 1,
+                arrive=clock(arrive[k]),
+                start=clock(start[k]),
+                leave=clock(leave),
+                latest_arrive=clock(latest[k]),
+            )
+        )
+    return tuple(stops)
+
+
+def _legs(
+    packed: Packed, stops: tuple[Stop, ...], depart: datetime, places: list[int]
+) -> tuple[Leg, ...]:
+    travel = packed.problem.travel
+    departures = [depart, *(stop.leave for stop in stops)]
+    legs = []
+    for k, (i, j) in enumerate(zip(places, places[1:], strict=False)):
+        drive = timedelta(milliseconds=int(leg_ms(travel, i, j)))
+        legs.append(
+            Leg(
+                from_id=packed.place_ids[i],
+                to_id=packed.place_ids[j],
+                order=k + 1,
+                depart=departures[k],
+                arrive=_later(departures[k], drive),
+                drive_s=drive.total_seconds(),
+                dist_m=int(leg_mm(travel, i, j)) / 1_000,
+            )
+        )
+    return tuple(legs)
+
+
+def _later(moment: datetime, duration: timedelta) -> datetime:
+    """Add a duration across a change of clocks: elapsed time, not wall time."""
+    return (moment.astimezone(ZoneInfo("UTC")) + duration).astimezone(moment.tzinfo)
+
+
+def _tour(packed: Packed, s: int, order: NDArray[np.int64], clock: _Clock) -> DayTour:
+    problem = packed.problem
+    shift = packed.shifts[s]
+    instants = np.empty((3, order.shape[0]), np.int64)
+    times: TourTimes = clock_tour(
+        problem.travel, problem.visits, problem.shifts, s, order, instants[0], instants[1]
+    )
+    latest_arrivals(
+        problem.travel, problem.visits, problem.shifts, s, order, times.depart_ms, instants[2]
+    )
+    stops = _stops(packed, order, instants, clock)
+    places = [
+        int(problem.shifts.start_place[s]),
+        *problem.visits.place[order].tolist(),
+        int(problem.shifts.end_place[s]),
+    ]
+    depart = clock(times.depart_ms)
+    duration_s = (int(times.finish_ms) - int(times.depart_ms)) / 1_000
+    return DayTour(
+        tour_id=shift.shift_id,
+        inspector_id=shift.inspector_id,
+        day=shift.day,
+        start_base_id=shift.start_base_id,
+        end_base_id=shift.end_base_id,
+        depart=depart,
+        back=clock(times.back_ms),
+        finish=clock(times.finish_ms),
+        stops=stops,
+        legs=_legs(packed, stops, depart, places),
+        work_s=int(times.work_ms) / 1_000,
+        drive_s=int(times.drive_ms) / 1_000,
+        wait_s=int(times.wait_ms) / 1_000,
+        write_up_s=int(problem.shifts.write_up_ms[s]) / 1_000,
+        overtime_s=max(0.0, duration_s - shift.paid_s),
+        dist_m=int(times.length_mm) / 1_000,
+        load=int(times.load) / 1_000,
+        cost=int(tour_cost(problem.shifts, s, times)) / MICRO,
+    )
+
+
+def tours_of(packed: Packed, solution: Solution) -> tuple[DayTour, ...]:
+    """Return the tours of a solution with all their clock times; empty shifts have none."""
+    clock = _Clock(packed)
+    return tuple(
+        _tour(packed, s, order, clock)
+        for s, order in enumerate(solution.orders)
+        if order.shape[0] > 0
+    )

@@ -2,21 +2,23 @@
 
 from __future__ import annotations
 
-from datetime import timedelta
+from itertools import pairwise
 from typing import TYPE_CHECKING
-from zoneinfo import ZoneInfo
 
 import numpy as np
 
+from georoute.domain.instants import later
 from georoute.domain.plan import DayTour, Leg, Stop
 from georoute.kernels.arrays import leg_mm, leg_ms
 from georoute.kernels.clock import clock_tour, latest_arrivals, time_tour, tour_cost
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
     from datetime import datetime
 
     from numpy.typing import NDArray
 
+    from georoute.kernels._jit import Int
     from georoute.kernels.clock import TourTimes
     from georoute.problem import Packed, Problem, Solution
 
@@ -45,22 +47,17 @@ def is_feasible(problem: Problem, shift: int, order: NDArray[np.int64]) -> bool:
     return allowed and times.late_ms == 0 and times.excess_ms == 0 and times.over_load == 0
 
 
-class _Clock:
-    """Turns kernel milliseconds into aware datetimes of the programme's zone."""
-
-    def __init__(self, packed: Packed) -> None:
-        self.zone = ZoneInfo(packed.programme.zone)
-        self.epoch_utc = packed.programme.epoch.astimezone(ZoneInfo("UTC"))
-
-    def __call__(self, instant_ms: int) -> datetime:
-        return (self.epoch_utc + timedelta(milliseconds=int(instant_ms))).astimezone(self.zone)
+def _clock(packed: Packed) -> Callable[[Int], datetime]:
+    """Return what turns kernel milliseconds into aware datetimes of the programme's zone."""
+    epoch = packed.programme.epoch
+    return lambda instant_ms: later(epoch, int(instant_ms) / 1_000)
 
 
 def _stops(
     packed: Packed,
     order: NDArray[np.int64],
     instants: NDArray[np.int64],
-    clock: _Clock,
+    clock: Callable[[Int], datetime],
 ) -> tuple[Stop, ...]:
     arrive, start, latest = instants
     stops = []
@@ -87,28 +84,25 @@ def _legs(
     travel = packed.problem.travel
     departures = [depart, *(stop.leave for stop in stops)]
     legs = []
-    for k, (i, j) in enumerate(zip(places, places[1:], strict=False)):
-        drive = timedelta(milliseconds=int(leg_ms(travel, i, j)))
+    for k, (i, j) in enumerate(pairwise(places)):
+        drive_s = int(leg_ms(travel, i, j)) / 1_000
         legs.append(
             Leg(
                 from_id=packed.place_ids[i],
                 to_id=packed.place_ids[j],
                 order=k + 1,
                 depart=departures[k],
-                arrive=_later(departures[k], drive),
-                drive_s=drive.total_seconds(),
+                arrive=later(departures[k], drive_s),
+                drive_s=drive_s,
                 dist_m=int(leg_mm(travel, i, j)) / 1_000,
             )
         )
     return tuple(legs)
 
 
-def _later(moment: datetime, duration: timedelta) -> datetime:
-    """Add a duration across a change of clocks: elapsed time, not wall time."""
-    return (moment.astimezone(ZoneInfo("UTC")) + duration).astimezone(moment.tzinfo)
-
-
-def _tour(packed: Packed, s: int, order: NDArray[np.int64], clock: _Clock) -> DayTour:
+def _tour(
+    packed: Packed, s: int, order: NDArray[np.int64], clock: Callable[[Int], datetime]
+) -> DayTour:
     problem = packed.problem
     shift = packed.shifts[s]
     instants = np.empty((3, order.shape[0]), np.int64)
@@ -150,7 +144,7 @@ def _tour(packed: Packed, s: int, order: NDArray[np.int64], clock: _Clock) -> Da
 
 def tours_of(packed: Packed, solution: Solution) -> tuple[DayTour, ...]:
     """Return the tours of a solution with all their clock times; empty shifts have none."""
-    clock = _Clock(packed)
+    clock = _clock(packed)
     return tuple(
         _tour(packed, s, order, clock)
         for s, order in enumerate(solution.orders)

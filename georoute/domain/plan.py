@@ -8,6 +8,7 @@ from datetime import date, datetime
 from enum import StrEnum
 from types import MappingProxyType
 
+from georoute.domain.instants import elapsed_s
 from georoute.domain.programme import Programme
 from georoute.domain.sites import Site, Visit
 
@@ -73,7 +74,7 @@ class Stop:
     @property
     def wait_s(self) -> float:
         """Seconds between arrival and the start of work."""
-        return (self.start - self.arrive).total_seconds()
+        return elapsed_s(self.arrive, self.start)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -128,7 +129,7 @@ class DayTour:
     @property
     def duration_s(self) -> float:
         """Seconds from leaving the base to the end of the write-up."""
-        return (self.finish - self.depart).total_seconds()
+        return elapsed_s(self.depart, self.finish)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

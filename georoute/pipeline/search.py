@@ -1,0 +1,141 @@
+"""Split, order, and move visits between days until nothing gets better or the effort is used."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from georoute.improve import relocate
+from georoute.pipeline.exchange_log import ExchangeLog
+from georoute.problem import Solution
+from georoute.sequence import sequence_tour
+from georoute.split import split
+from georoute.timetable import solution_cost
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable
+
+    from numpy.typing import NDArray
+
+    from georoute.domain.run import Effort, Progress
+    from georoute.pipeline.budget import Budget
+    from georoute.problem import Packed, Problem
+
+__all__ = ["Found", "search"]
+
+MICRO = 1_000_000
+ROUNDS = 6
+"""Orders and days are improved in turn; on registers tried, later rounds change nothing."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Found:
+    """The solution, its log, and ``(stage, money, visits placed)`` after each stage."""
+
+    solution: Solution
+    log: ExchangeLog
+    stages: tuple[tuple[str, float, int], ...]
+
+
+class _Search:
+    """The state of one search: the solution at hand and what is told about it."""
+
+    def __init__(self, packed: Packed, effort: Effort, seed: int, progress: Progress) -> None:
+        self.packed = packed
+        self.problem: Problem = packed.problem
+        self.effort = effort
+        self.seed = seed
+        self.progress = progress
+        self.log = ExchangeLog(packed)
+        self.stages: list[tuple[str, float, int]] = []
+        self.orders: list[NDArray[np.int64]] = []
+
+    @property
+    def solution(self) -> Solution:
+        return Solution(orders=tuple(self.orders))
+
+    def note(self, stage: str) -> None:
+        placed = sum(order.shape[0] for order in self.orders)
+        self.stages.append((stage, solution_cost(self.problem, self.solution) / MICRO, placed))
+
+    def split(self) -> None:
+        self.progress("split", fraction=0.0)
+        self.orders = list(split(self.problem, seed=self.seed).orders)
+        for shift, order in enumerate(self.orders):
+            self.log.begin(shift, order)
+        self.note("split")
+
+    def order(self, shifts: Iterable[int], *, budget: Budget, round_number: int) -> None:
+        """Put the stops of each of ``shifts`` in the best order found."""
+        busy = [s for s in shifts if self.orders[s].shape[0] > 0]
+        for done, shift in enumerate(busy):
+            self.progress(
+                "order",
+                fraction=done / len(busy),
+                cost=solution_cost(self.problem, self.solution) / MICRO,
+            )
+            found = sequence_tour(
+                self.problem,
+                shift,
+                self.orders[shift],
+                kicks=self.effort.kicks_per_stop * self.orders[shift].shape[0],
+                seed=self.seed + round_number,
+                keep_log=True,
+                should_stop=budget,
+            )
+            for step in found.steps:
+                self.log.add(shift, step.kind, step.order_after)
+            self.orders[shift] = found.order
+            self.log.add(shift, "order", found.order)
+
+    def days(self, *, budget: Budget, round_number: int) -> list[int]:
+        """Move visits between days; return the shifts whose visits changed."""
+        before = self.orders
+        result = relocate(
+            self.problem,
+            self.solution,
+            effort=self.effort,
+            seed=self.seed + round_number,
+            progress=self.progress,
+            should_stop=budget,
+        )
+        self.orders = list(result.solution.orders)
+        touched = [
+            s
+            for s, (old, new) in enumerate(zip(before, self.orders, strict=True))
+            if not np.array_equal(old, new)
+        ]
+        for shift in touched:
+            self.log.add(shift, "relocate", self.orders[shift])
+        return touched
+
+
+def search(
+    packed: Packed, *, effort: Effort, seed: int, progress: Progress, budget: Budget
+) -> Found:
+    """Find days and orders for all visits; the result keeps every limit.
+
+    Without a limit in seconds the search ends when orders and days no longer improve or the
+    rounds are used; with one it goes on until the seconds are used. In either case it ends at
+    once, with the best found so far, when the budget says so.
+    """
+    state = _Search(packed, effort, seed, progress)
+    state.split()
+    state.order(range(len(state.orders)), budget=budget, round_number=0)
+    state.note("order")
+    round_number = 0
+    while True:
+        round_number += 1
+        touched = state.days(budget=budget, round_number=round_number)
+        timed = effort.seconds is not None
+        if budget() or (not touched and not timed):
+            break
+        again = range(len(state.orders)) if timed else touched
+        state.order(again, budget=budget, round_number=round_number)
+        if not timed and round_number >= ROUNDS:
+            break
+    state.note("days together")
+    progress("days", fraction=1.0)
+    return Found(solution=state.solution, log=state.log, stages=tuple(state.stages))

@@ -1,1 +1,7 @@
 """The command line: parse, call, render, exit."""
+
+from __future__ import annotations
+
+from georoute.cli.app import main
+
+__all__ = ["main"]

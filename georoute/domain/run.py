@@ -3,9 +3,18 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from enum import StrEnum
 from typing import Protocol
 
-__all__ = ["EFFORTS", "Effort", "Progress", "ShouldStop", "never_stop", "no_progress"]
+__all__ = ["EFFORTS", "Effort", "EffortName", "Progress", "ShouldStop", "never_stop", "no_progress"]
+
+
+class EffortName(StrEnum):
+    """The efforts on offer."""
+
+    QUICK = "quick"
+    NORMAL = "normal"
+    THOROUGH = "thorough"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -23,9 +32,12 @@ class Effort:
 
 
 EFFORTS: dict[str, Effort] = {
-    "quick": Effort(name="quick", kicks_per_stop=20, relocation_rounds=20),
-    "normal": Effort(name="normal", kicks_per_stop=200, relocation_rounds=100),
-    "thorough": Effort(name="thorough", kicks_per_stop=5_000, relocation_rounds=1_000),
+    effort.name: effort
+    for effort in (
+        Effort(name=EffortName.QUICK, kicks_per_stop=20, relocation_rounds=20),
+        Effort(name=EffortName.NORMAL, kicks_per_stop=200, relocation_rounds=100),
+        Effort(name=EffortName.THOROUGH, kicks_per_stop=5_000, relocation_rounds=1_000),
+    )
 }
 
 

@@ -31,11 +31,11 @@ if TYPE_CHECKING:
     from georoute.domain.plan import Capacity, Exchange, ReasonCode
     from georoute.domain.programme import Programme
     from georoute.domain.run import Progress, ShouldStop
-    from georoute.domain.sites import Register
+    from georoute.domain.sites import Base, Register, Site
     from georoute.pipeline.search import Found
     from georoute.problem import Packed
 
-__all__ = ["Prepared", "make_plan", "prepare"]
+__all__ = ["Prepared", "make_plan", "plan", "prepare"]
 
 PLAN_NAMESPACE = uuid.UUID("6d1c7a52-4c0e-5a53-9d0b-0b5f5f0c7a11")
 """A plan's id is the UUIDv5 of its inputs in this namespace: a rerun gives the same id."""
@@ -67,7 +67,7 @@ def _places(programme: Programme, register: Register) -> Places:
             "base. Rename the base in the programme file."
         )
         raise InputError(msg)
-    spots = [*programme.bases, *register.sites]
+    spots: list[Base | Site] = [*programme.bases, *register.sites]
     return Places(
         ids=(*base_ids, *(site.site_id for site in register.sites)),
         lat_deg=np.array([spot.lat_deg for spot in spots], np.float64),
@@ -208,7 +208,48 @@ def make_plan(
         progress=progress,
         budget=budget,
     )
-    plan = _assemble(prepared, found, budget=budget, issued=issued)
+    finished = _assemble(prepared, found, budget=budget, issued=issued)
     progress("check", fraction=0.0)
-    _check(plan)
-    return plan
+    _check(finished)
+    return finished
+
+
+def plan(
+    programme: Programme,
+    register: Register,
+    *,
+    progress: Progress = no_progress,
+    should_stop: ShouldStop = never_stop,
+    issued: datetime | None = None,
+) -> Plan:
+    """Plan a register: days, inspectors, order and clock times, checked by the audit.
+
+    Parameters
+    ----------
+    programme
+        All settings of the run, from ``read_programme``.
+    register
+        The checked register, from ``read_register``.
+    progress
+        Called often with the stage at hand, its fraction done and the cost so far.
+    should_stop
+        Asked often; once it is true the search ends with the best plan found so far.
+    issued
+        When the plan is issued; told on the pages, no part of the plan's identity.
+
+    Returns
+    -------
+    Plan
+        Every visit is in a tour or in ``unplaced`` with its reason.
+
+    Raises
+    ------
+    InputError
+        A base and a site share an id.
+    TableError
+        The user's own travel table has faults.
+    AuditError
+        The finished plan broke one of its own rules (a defect of the program, never of the input).
+    """
+    prepared = prepare(programme, register, progress=progress)
+    return make_plan(prepared, progress=progress, should_stop=should_stop, issued=issued)

@@ -1,0 +1,207 @@
+"""A plan in a few figures: for the terminal and as JSON."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from rich.text import Text
+
+from georoute.cli.render import hours, kilometres, money, new_table, stdout
+from georoute.domain.cautions import CAUTIONS
+
+if TYPE_CHECKING:
+    from georoute.domain.plan import Capacity, DayTour, Plan, Stop, Unplaced
+
+__all__ = ["as_json", "capacity_line", "print_plan", "print_tour", "print_unplaced"]
+
+WORST_SHOWN = 10
+
+
+def capacity_line(capacity: Capacity) -> str:
+    """Say the capacity sum in words: work and least travel against the hours of the shifts."""
+    need = capacity.work_h + capacity.least_travel_h
+    line = (
+        f"Capacity: {capacity.visits} visits need {capacity.work_h:.1f} h of work and at least "
+        f"{capacity.least_travel_h:.1f} h of travel ({need:.1f} h); {capacity.shifts} shifts "
+        f"have {capacity.shift_h:.1f} h, and {capacity.overtime_h:.1f} h of overtime."
+    )
+    if capacity.short_h > 0:
+        line += (
+            f" At least {capacity.short_h:.1f} h are missing: whatever the order, some visits "
+            "cannot be placed."
+        )
+    return line
+
+
+def _travel_line(plan: Plan) -> str:
+    if not plan.travel.estimated:
+        return f"Travel: {plan.travel.source}."
+    line = f"Travel: {plan.travel.source}; estimated, not measured along roads"
+    low, high = plan.travel.low_factor, plan.travel.high_factor
+    if (low, high) != (1.0, 1.0):
+        line += f" (a leg may take {low:.2f} to {high:.2f} times the time shown)"
+    return line + "."
+
+
+def _stage_line(plan: Plan) -> str:
+    currency = plan.programme.tariff.currency
+    told = (
+        f"after {stage.stage} {money(stage.cost, currency)} ({stage.placed} placed)"
+        for stage in plan.stages
+    )
+    return "Cost " + ", ".join(told) + "."
+
+
+def print_unplaced(unplaced: tuple[Unplaced, ...], *, most: int | None = None) -> None:
+    """Print the visits that are not in the plan, each with its reason; ``most`` at the most."""
+    console = stdout()
+    if not unplaced:
+        console.print("Every visit is placed.")
+        return
+    console.print(Text(f"Not placed: {len(unplaced)} visit(s)", style="bold"))
+    for item in unplaced[:most]:
+        console.print(Text(f"  {item.site_id}: {item.message}  [{item.code.value}]"))
+    if most is not None and len(unplaced) > most:
+        console.print(f"  … and {len(unplaced) - most} more: georoute show PLAN --unplaced")
+
+
+def print_plan(plan: Plan) -> None:
+    """Print a plan: what is not placed first, then a line for each tour, then the sums."""
+    console = stdout()
+    currency = plan.programme.tariff.currency
+    names = {person.inspector_id: person.name for person in plan.programme.inspectors}
+    console.print(Text(plan.programme.title, style="bold"))
+    console.print(Text(capacity_line(plan.capacity)))
+    print_unplaced(plan.unplaced, most=WORST_SHOWN)
+    figures = ("stops", "drive", "work", "wait", "overtime", "km", "cost")
+    table = new_table("date", "inspector", "out-back", *figures, right=figures)
+    for tour in plan.tours:
+        table.add_row(
+            f"{tour.day:%a} {tour.day.isoformat()}",
+            Text(names[tour.inspector_id]),
+            f"{tour.depart:%H:%M}-{tour.back:%H:%M}",
+            str(len(tour.stops)),
+            hours(tour.drive_s),
+            hours(tour.work_s),
+            hours(tour.wait_s),
+            hours(tour.overtime_s),
+            f"{tour.dist_m / 1000:.1f}",
+            f"{tour.cost:,.2f}",
+        )
+    console.print(table)
+    stops = sum(len(tour.stops) for tour in plan.tours)
+    console.print(
+        f"{len(plan.tours)} tours, {stops} stops, "
+        f"{hours(sum(tour.drive_s for tour in plan.tours))} of driving, "
+        f"{kilometres(sum(tour.dist_m for tour in plan.tours))}, {money(plan.cost, currency)}."
+    )
+    console.print(Text(_stage_line(plan)))
+    console.print(Text(_travel_line(plan)))
+    console.print(f"The search ended because: {plan.provenance.stop_rule.value}. No bound yet.")
+
+
+def _stop_row(plan: Plan, stop: Stop, leg_min: float) -> tuple[str | Text, ...]:
+    sites = {site.site_id: site for site in plan.sites}
+    visits = {visit.visit_id: visit for visit in plan.visits}
+    site, visit = sites[stop.site_id], visits[stop.visit_id]
+    return (
+        str(stop.order),
+        f"{leg_min:.0f}",
+        f"{stop.arrive:%H:%M}",
+        f"{stop.latest_arrive:%H:%M}",
+        f"{visit.work_s / 60:.0f}",
+        f"{stop.leave:%H:%M}",
+        Text(site.site_id),
+        Text(" - ".join(part for part in (site.name, site.address) if part)),
+    )
+
+
+def print_tour(plan: Plan, tour: DayTour) -> None:
+    """Print one tour stop by stop."""
+    console = stdout()
+    names = {person.inspector_id: person.name for person in plan.programme.inspectors}
+    console.print(
+        Text(f"{tour.day:%A} {tour.day.isoformat()}, {names[tour.inspector_id]}", style="bold")
+    )
+    console.print(
+        f"leaves {tour.start_base_id} {tour.depart:%H:%M}, back at {tour.end_base_id} "
+        f"{tour.back:%H:%M}, finished {tour.finish:%H:%M}"
+    )
+    figures = ("no.", "drive min", "arrive", "latest", "work min", "leave")
+    table = new_table(*figures, "site", "name and address", right=figures)
+    for stop, leg in zip(tour.stops, tour.legs, strict=False):
+        table.add_row(*_stop_row(plan, stop, leg.drive_s / 60))
+    console.print(table)
+
+
+def _tour_json(tour: DayTour) -> dict[str, object]:
+    return {
+        "tour_id": tour.tour_id,
+        "inspector_id": tour.inspector_id,
+        "date": tour.day.isoformat(),
+        "depart": tour.depart.isoformat(),
+        "back": tour.back.isoformat(),
+        "finish": tour.finish.isoformat(),
+        "drive_s": tour.drive_s,
+        "work_s": tour.work_s,
+        "wait_s": tour.wait_s,
+        "overtime_s": tour.overtime_s,
+        "dist_m": tour.dist_m,
+        "cost": tour.cost,
+        "stops": [
+            {
+                "order": stop.order,
+                "visit_id": stop.visit_id,
+                "site_id": stop.site_id,
+                "arrive": stop.arrive.isoformat(),
+                "start": stop.start.isoformat(),
+                "leave": stop.leave.isoformat(),
+                "latest_arrive": stop.latest_arrive.isoformat(),
+            }
+            for stop in tour.stops
+        ],
+    }
+
+
+def as_json(plan: Plan) -> dict[str, object]:
+    """Return the plan as plain values: ISO 8601 times, units in the names."""
+    return {
+        "plan_id": plan.plan_id,
+        "title": plan.programme.title,
+        "currency": plan.programme.tariff.currency,
+        "cost": plan.cost,
+        "visits": len(plan.visits),
+        "placed": sum(len(tour.stops) for tour in plan.tours),
+        "capacity": {
+            "visits": plan.capacity.visits,
+            "shifts": plan.capacity.shifts,
+            "work_h": plan.capacity.work_h,
+            "least_travel_h": plan.capacity.least_travel_h,
+            "shift_h": plan.capacity.shift_h,
+            "overtime_h": plan.capacity.overtime_h,
+            "short_h": plan.capacity.short_h,
+        },
+        "travel": {
+            "source": plan.travel.source,
+            "estimated": plan.travel.estimated,
+            "low_factor": plan.travel.low_factor,
+            "high_factor": plan.travel.high_factor,
+        },
+        "stages": [
+            {"stage": stage.stage, "cost": stage.cost, "placed": stage.placed}
+            for stage in plan.stages
+        ],
+        "stop_rule": plan.provenance.stop_rule.value,
+        "tours": [_tour_json(tour) for tour in plan.tours],
+        "unplaced": [
+            {
+                "visit_id": item.visit_id,
+                "site_id": item.site_id,
+                "reason": item.code.value,
+                "message": item.message,
+                "figures": dict(item.figures),
+            }
+            for item in plan.unplaced
+        ],
+        "cautions": list(CAUTIONS),
+    }

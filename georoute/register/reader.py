@@ -1,0 +1,350 @@
+"""Read and check a register: one way in for every format."""
+
+from __future__ import annotations
+
+import hashlib
+from dataclasses import dataclass, field, replace
+from pathlib import Path
+from types import MappingProxyType
+from typing import TYPE_CHECKING
+
+from georoute.domain.sites import Register, Site, Visit, visit_id_of
+from georoute.errors import RegisterError
+from georoute.register.codes import Code, new_finding
+from georoute.register.delimited import read_delimited
+from georoute.register.headers import known_headers, lay_out
+from georoute.register.ids import compare_ids
+from georoute.register.rows import parse_rows
+from georoute.register.tables import TableFault
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping, Sequence
+
+    from georoute.domain.findings import Finding
+    from georoute.domain.programme import Programme
+    from georoute.register.headers import Layout
+    from georoute.register.places import Located
+    from georoute.register.rows import ParsedRow
+    from georoute.register.tables import RawTable
+
+__all__ = ["DEFAULT_ACCESS_S", "DEFAULT_WORK_S", "check_register", "read_register"]
+
+DEFAULT_WORK_S = 30 * 60.0
+"""Seconds of work where neither the row nor a programme says; a choice of ours, to be edited."""
+
+DEFAULT_ACCESS_S = 5 * 60.0
+"""Seconds of access where neither the row nor a programme says; a choice of ours, to be edited."""
+
+_DELIMITED = frozenset({".csv", ".tsv", ".txt"})
+_WORKBOOK = frozenset({".xlsx", ".xlsm"})
+_OLD_WORKBOOK = frozenset({".xls", ".xlsb"})
+_FOLDERS = frozenset({".gdb"})
+_SIDE_FILES = (".dbf", ".shx", ".prj", ".cpg")
+"""What belongs to a shapefile besides its .shp, in the order it is hashed."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Settings:
+    """How to read: the caller's word, else the programme's, else the default."""
+
+    programme: Programme | None
+    columns: Mapping[str, str] = field(default_factory=lambda: MappingProxyType({}))
+    sheet: str | None = None
+    layer: str | None = None
+    crs: str | None = None
+    work_s: float = DEFAULT_WORK_S
+    access_s: float = DEFAULT_ACCESS_S
+
+
+def _settings(
+    programme: Programme | None,
+    columns: Mapping[str, str] | None,
+    choice: tuple[str | None, str | None, str | None],
+    defaults: tuple[float | None, float | None],
+) -> _Settings:
+    sheet, layer, crs = choice
+    work_s, access_s = defaults
+    source = None if programme is None else programme.register
+    if programme is not None:
+        work_s = programme.default_work_s if work_s is None else work_s
+        access_s = programme.default_access_s if access_s is None else access_s
+    if source is not None:
+        columns = source.columns if columns is None else columns
+        sheet, layer, crs = sheet or source.sheet, layer or source.layer, crs or source.crs
+    return _Settings(
+        programme=programme,
+        columns=columns or {},
+        sheet=sheet or None,
+        layer=layer or None,
+        crs=crs or None,
+        work_s=DEFAULT_WORK_S if work_s is None else work_s,
+        access_s=DEFAULT_ACCESS_S if access_s is None else access_s,
+    )
+
+
+def read_register(  # noqa: PLR0913 - every setting of reading has a name of its own
+    path: Path | str,
+    *,
+    programme: Programme | None = None,
+    columns: Mapping[str, str] | None = None,
+    sheet: str | None = None,
+    layer: str | None = None,
+    crs: str | None = None,
+    default_work_s: float | None = None,
+    default_access_s: float | None = None,
+) -> tuple[Register, tuple[Finding, ...]]:
+    """Read a register and check it.
+
+    Parameters
+    ----------
+    path
+        The file: .csv, .tsv, .txt, .xlsx, .xlsm, or a vector file of points.
+    programme
+        The programme it is for; gives defaults for all that follows, and more to check.
+    columns
+        Headers of the file by canonical column name, for foreign headers.
+    sheet
+        Sheet of a workbook.
+    layer
+        Layer of a vector file.
+    crs
+        Coordinate system of a file that does not state its own.
+    default_work_s
+        Seconds of work of a row that states none.
+    default_access_s
+        Seconds of access of a row that states none.
+
+    Returns
+    -------
+    register : Register
+        Sites and visits, in file order.
+    findings : tuple of Finding
+        Warnings and notes.
+
+    Raises
+    ------
+    RegisterError
+        If there is any fault; its ``findings`` are all faults, warnings and notes together.
+    """
+    settings = _settings(
+        programme, columns, (sheet, layer, crs), (default_work_s, default_access_s)
+    )
+    register, findings = _read(Path(path), settings)
+    if register is None:
+        faults = [finding for finding in findings if finding.is_fault]
+        first = faults[0]
+        where = f" (row {first.row})" if first.row is not None else ""
+        count = f"{len(faults)} faults" if len(faults) > 1 else "1 fault"
+        msg = f"{path}: {count}; the first{where}: {first.message}; {first.remedy}"
+        raise RegisterError(msg, findings=findings)
+    return register, findings
+
+
+def check_register(  # noqa: PLR0913 - as read_register
+    path: Path | str,
+    *,
+    programme: Programme | None = None,
+    columns: Mapping[str, str] | None = None,
+    sheet: str | None = None,
+    layer: str | None = None,
+    crs: str | None = None,
+    default_work_s: float | None = None,
+    default_access_s: float | None = None,
+) -> tuple[Finding, ...]:
+    """Check a register; the arguments are those of `read_register`.
+
+    Returns
+    -------
+    tuple of Finding
+        All faults, warnings and notes: first those of the file, then by row.
+    """
+    settings = _settings(
+        programme, columns, (sheet, layer, crs), (default_work_s, default_access_s)
+    )
+    return _read(Path(path), settings)[1]
+
+
+def _read(path: Path, settings: _Settings) -> tuple[Register | None, tuple[Finding, ...]]:
+    try:
+        table, digest = _load(path, settings)
+    except TableFault as fault:
+        return None, _sorted(fault.findings, path)
+    layout = lay_out(table, mapping=settings.columns)
+    rows, row_findings = parse_rows(table, layout, programme=settings.programme)
+    located, place_findings = _locate(table, layout, rows, settings)
+    bases = () if settings.programme is None else settings.programme.bases
+    findings = [
+        *table.findings,
+        *layout.findings,
+        *row_findings,
+        *compare_ids(
+            rows,
+            column=layout.written.get("site_id", "site_id"),
+            base_ids=frozenset(base.base_id for base in bases),
+        ),
+        *place_findings,
+    ]
+    if not table.rows and not any(finding.is_fault for finding in table.findings):
+        findings.append(
+            new_finding(
+                Code.NO_ROWS,
+                "the file has no row below its headers",
+                "write one row per site",
+            )
+        )
+    ordered = _sorted(findings, path)
+    if any(finding.is_fault for finding in findings):
+        return None, ordered
+    return _register(path, digest, layout, rows, located, settings), ordered
+
+
+def _sorted(findings: Sequence[Finding], path: Path) -> tuple[Finding, ...]:
+    """Order findings by row, those of the file as a whole first, and name the file."""
+    named = (replace(finding, file=str(path)) for finding in findings)
+    return tuple(sorted(named, key=lambda finding: finding.row or 0))
+
+
+def _load(path: Path, settings: _Settings) -> tuple[RawTable, str]:
+    """Read the table of a file, and its hash; readers are imported where they are used."""
+    suffix = path.suffix.casefold()
+    data = _bytes_of(path)
+    digest = hashlib.sha256(data)
+    unused = []
+    if suffix in _DELIMITED:
+        table = read_delimited(data, known=known_headers(settings.columns))
+        unused = [("sheet", settings.sheet), ("layer", settings.layer)]
+    elif suffix in _WORKBOOK:
+        from georoute.register.workbook import read_workbook  # noqa: PLC0415 - slow to import
+
+        table = read_workbook(data, sheet=settings.sheet)
+        unused = [("layer", settings.layer)]
+    elif suffix in _OLD_WORKBOOK:
+        fault = new_finding(
+            Code.UNKNOWN_FORMAT,
+            f"`{suffix}` workbooks cannot be read",
+            "save it as .xlsx in the spreadsheet program",
+        )
+        raise TableFault([fault])
+    else:
+        from georoute.register.vector import read_vector  # noqa: PLC0415 - slow to import
+
+        table = read_vector(path, layer=settings.layer)
+        for side in _SIDE_FILES if suffix == ".shp" else ():
+            digest.update(path.with_suffix(side).read_bytes() if _is_side(path, side) else b"")
+        unused = [("sheet", settings.sheet)]
+    notes = [_not_used(name, value) for name, value in unused if value is not None]
+    return replace(table, findings=(*table.findings, *notes)), digest.hexdigest()
+
+
+def _is_side(path: Path, side: str) -> bool:
+    return path.with_suffix(side).is_file()
+
+
+def _not_used(name: str, value: str) -> Finding:
+    return new_finding(
+        Code.SETTING_NOT_USED,
+        f"the setting `{name}` does not apply to a file of this format",
+        "take the setting out",
+        column=name,
+        value=value,
+    )
+
+
+def _bytes_of(path: Path) -> bytes:
+    """Read a file whole; a folder is read only where a format is one."""
+    try:
+        if path.is_dir() and path.suffix.casefold() in _FOLDERS:
+            return b"".join(part.read_bytes() for part in sorted(path.iterdir()) if part.is_file())
+        return path.read_bytes()
+    except FileNotFoundError as error:
+        fault = new_finding(
+            Code.FILE_NOT_FOUND,
+            "there is no such file",
+            f"look at the path; it was looked for from the folder {_folder_words(path)}",
+        )
+        raise TableFault([fault]) from error
+    except IsADirectoryError as error:
+        fault = new_finding(Code.NOT_READABLE, "this is a folder", "name the file in it")
+        raise TableFault([fault]) from error
+    except (OSError, ValueError) as error:
+        reason = getattr(error, "strerror", None) or str(error)
+        fault = new_finding(
+            Code.NOT_READABLE,
+            f"the file cannot be read: {reason}",
+            "close the program that holds it, or ask for the right to read it",
+        )
+        raise TableFault([fault]) from error
+
+
+def _folder_words(path: Path) -> str:
+    return f"`{path.parent}`" if path.parent != Path() else "you are in"
+
+
+def _locate(
+    table: RawTable, layout: Layout, rows: Sequence[ParsedRow], settings: _Settings
+) -> tuple[Located | None, list[Finding]]:
+    from georoute.register.places import find_crs, locate  # noqa: PLC0415 - slow to import
+
+    crs = find_crs(stated=table.crs, wanted=settings.crs, needed=table.has_geometry)
+    findings = list(crs.findings)
+    has_places = table.has_geometry or {"lat", "lon"} <= set(layout.known)
+    if any(finding.is_fault for finding in findings) or not has_places:
+        return None, findings
+    columns = (layout.written.get("lat", "lat"), layout.written.get("lon", "lon"))
+    if table.has_geometry:
+        columns = ("geometry", "geometry")
+    bases = () if settings.programme is None else settings.programme.bases
+    located = locate(rows, crs=crs, columns=columns, bases=bases)
+    return located, [*findings, *located.findings]
+
+
+def _register(  # noqa: PLR0913 - the one place where all parts come together
+    path: Path,
+    digest: str,
+    layout: Layout,
+    rows: Sequence[ParsedRow],
+    located: Located | None,
+    settings: _Settings,
+) -> Register | None:
+    if located is None:
+        return None
+    places = zip(rows, located.lat_deg.tolist(), located.lon_deg.tolist(), strict=True)
+    return Register(
+        sites=tuple(_site(row, lat, lon) for row, lat, lon in places),
+        visits=tuple(_visit(row, settings) for row in rows),
+        source=str(path),
+        sha256=digest,
+        extra_columns=tuple(header for header, _ in layout.extra),
+    )
+
+
+def _site(row: ParsedRow, lat_deg: float, lon_deg: float) -> Site:
+    return Site(
+        site_id=row.site_id,
+        lat_deg=lat_deg,
+        lon_deg=lon_deg,
+        name=row.texts["name"],
+        address=row.texts["address"],
+        contact=row.texts["contact"],
+        notes=row.texts["notes"],
+        row=row.number,
+        extra=MappingProxyType(row.extra),
+    )
+
+
+def _visit(row: ParsedRow, settings: _Settings) -> Visit:
+    work_min, access_min = row.minutes.get("work_min"), row.minutes.get("access_min")
+    return Visit(
+        visit_id=visit_id_of(row.site_id, row.task),
+        site_id=row.site_id,
+        task=row.task,
+        work_s=settings.work_s if work_min is None else work_min * 60.0,
+        access_s=settings.access_s if access_min is None else access_min * 60.0,
+        load=row.numbers.get("load", 0.0),
+        earliest=row.dates.get("earliest_date"),
+        due=row.dates.get("due_date"),
+        latest=row.dates.get("latest_date"),
+        inspector_ids=row.inspectors,
+        worth=row.numbers.get("worth"),
+        must=row.must,
+    )

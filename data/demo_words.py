@@ -175,5 +175,80 @@ NAME_TAILS = (
     "Vaivén Lento",
 )
 
+# Where the bases lie: key in the programme's text, street, and a place near by (lon, lat).
+BASES = (
+    ("norte", "Avenida Islón", (-71.2350, -29.8950)),
+    ("sur", "Avenida La Cantera", (-71.3150, -29.9650)),
+)
+
 PROGRAMME = """\
+# The working week of an invented inspection office on the coast of La Serena and Coquimbo, Chile.
+# The office, its people, bases and sites are made up; streets: (c) OpenStreetMap contributors.
+# Every hour, limit and price here is an example: set those of your law, your contract, your office.
+
+title = "Oficina de Inspección Bahía Clara, week of 1 March 2027"
+zone = "America/Santiago"
+first_date = 2027-03-01
+last_date = 2027-03-05
+
+[register]
+path = "register.csv"
+
+[[base]]
+base_id = "norte"
+name = "Base Norte"
+lat = $norte_lat
+lon = $norte_lon
+
+[[base]]
+base_id = "sur"
+name = "Base Sur"
+lat = $sur_lat
+lon = $sur_lon
+
+[shift]
+shift_start = "08:00"
+shift_end = "17:30"
+paid_h = 8.0
+overtime_limit_h = 1.0
+write_up_min = 30
+
+[calendar]
+weekdays = ["mon", "tue", "wed", "thu", "fri"]
+holiday_country = "CL"
+
+[[inspector]]
+inspector_id = "amparo"
+name = "Amparo Quilodrán"
+start_base = "norte"
+
+[[inspector]]
+inspector_id = "benito"
+name = "Benito Larenas"
+start_base = "sur"
+
+[[inspector]]
+inspector_id = "ximena"
+name = "Ximena Ñancupil"
+start_base = "norte"
+end_base = "norte"
+days_off = [2027-03-05] # training
+
+[work]
+work_min = 30
+access_min = 5
+
+[tariff]
+currency = "CLP"
+hour = 14500
+km = 260
+overtime_hour = 21750
+day_opened = 9000
+
+[travel]
+method = "detour" # times and lengths are estimated from straight lines
+
+[search]
+seed = 2027
+effort = "normal"
 """

@@ -4,7 +4,7 @@ Run ``python -m data.make_demo`` from the folder above, after ``make_extract.py`
 into ``demo/``:
 
 - ``register.csv``: the register of the office, one site a row;
-- ``programme.toml``: its working week (copied from the text in ``demo_words.py``);
+- ``programme.toml``: its working week (the text stands in ``demo_words.py``);
 - ``register_dirty.csv``: the register as an old list from elsewhere, with one fault of each kind
   planted on a known row (``PLANTED``), for trying ``check``.
 
@@ -21,11 +21,12 @@ import random
 from dataclasses import dataclass
 from datetime import date, timedelta
 from pathlib import Path
+from string import Template
 from typing import TYPE_CHECKING
 
 import osmium
 
-from data.demo_words import COLUMNS, KINDS, NAME_HEADS, NAME_TAILS, PROGRAMME, Kind
+from data.demo_words import BASES, COLUMNS, KINDS, NAME_HEADS, NAME_TAILS, PROGRAMME, Kind
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Iterator
@@ -37,6 +38,7 @@ SEED = 20270301
 FIRST_DATE = date(2027, 3, 1)
 METRES_PER_DEGREE = 111_195.0  # of latitude, on a sphere of mean radius; metres suffice here
 APART_M = 110.0  # sites lie at least this far apart
+BASE_OFFSET_M = 12.0
 SHORTEST_STRETCH_M = 15.0  # on a shorter one a site would lie on a corner
 TOWN_BORDER_LAT = -29.953  # roughly where Coquimbo ends and La Serena begins
 SHARE_OVERDUE, SHARE_DUE_THIS_WEEK = 0.06, 0.24
@@ -251,15 +253,30 @@ def table_text(rows: Iterable[Row], *, delimiter: str) -> str:
     return text.getvalue()
 
 
+def programme_text(stretches: list[Stretch]) -> str:
+    """Return the programme with its bases beside the streets they should lie at."""
+    places = {}
+    for name, street, near in BASES:
+        stretch = min(
+            (stretch for stretch in stretches if stretch.street == street and stretch.length_m > 0),
+            key=lambda stretch: math.hypot(*metres(near, stretch.start)),
+        )
+        spot = beside(stretch, share=0.5, offset_m=BASE_OFFSET_M)
+        places[f"{name}_lat"] = f"{spot.lat_deg:.6f}"
+        places[f"{name}_lon"] = f"{spot.lon_deg:.6f}"
+    return Template(PROGRAMME).substitute(places)
+
+
 def demo_files(extract: Path) -> dict[str, bytes]:
     """Return the files of the demo by name."""
-    rows = make_register(read_stretches(extract))
+    stretches = read_stretches(extract)
+    rows = make_register(stretches)
     # Every fourth site: short enough to read, spread over the area, of every kind.
     dirty = soil(rows[::4])
     return {
         "register.csv": table_text(rows, delimiter=",").encode(),
         "register_dirty.csv": table_text(dirty, delimiter=";").encode("utf-8-sig"),
-        "programme.toml": PROGRAMME.encode(),
+        "programme.toml": programme_text(stretches).encode(),
     }
 
 

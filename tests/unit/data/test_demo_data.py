@@ -64,7 +64,7 @@ def test_sites_lie_beside_the_street_of_their_address(rows: list[script.Row]) ->
             for stretch in stretches
             if row["address"].startswith(stretch.street + " ")
         ]
-        assert 4.0 <= min(away) <= 11.0, row
+        assert 2.0 <= min(away) <= 11.0, row
 
 
 def distance_m(place: tuple[float, float], stretch: script.Stretch) -> float:

@@ -132,13 +132,14 @@ def _remove(temporary: Path) -> None:
 
 
 def _prepare(target: Path) -> None:
-    if target.is_dir():
-        msg = f"{target}: is a folder, a file was expected; add a file name"
-        raise OutputError(msg)
     try:
+        is_folder = target.is_dir()
         target.parent.mkdir(parents=True, exist_ok=True)
     except OSError as error:
         raise _output_error(target, error) from error
+    if is_folder:
+        msg = f"{target}: is a folder, a file was expected; add a file name"
+        raise OutputError(msg)
     clear_stale(target)
 
 

@@ -38,13 +38,13 @@ __all__ = [
 ]
 
 EQUATOR_RADIUS_M = 6_378_137.0
-"""Semi-major axis of WGS 84 (NIMA TR8350.2, third edition, table 3.1)."""
+"""Semi-major axis of WGS 84 (NIMA TR8350.2, third edition, 1997: defining parameters)."""
 
 FLATTENING = 1.0 / 298.257223563
-"""Flattening of WGS 84 (same table)."""
+"""Flattening of WGS 84 (same place)."""
 
 MEAN_RADIUS_M = 6_371_008.7714
-"""Mean radius of the semi-axes of WGS 84 (same report, table 3.5)."""
+"""Mean radius of the semi-axes of WGS 84 (same report, derived constants)."""
 
 
 @kernel

@@ -21,26 +21,30 @@ class FindingLog:
     def __init__(self) -> None:
         self._kept: list[Finding] = []
         self._seen: Counter[tuple[Severity, str]] = Counter()
+        self._unlisted: Counter[tuple[Severity, str]] = Counter()
 
     def add(self, finding: Finding) -> None:
         """Keep ``finding``, or only count it where its code has reached the limit."""
         key = (finding.severity, finding.code)
-        self._seen[key] += 1
-        if self._seen[key] <= _LIMITS[finding.severity]:
+        if self.room(*key):
             self._kept.append(finding)
+            self._seen[key] += 1
+        else:
+            self._unlisted[key] += 1
 
     def room(self, severity: Severity, code: str) -> int:
         """Return how many more findings of this kind would be kept."""
-        return max(0, _LIMITS[severity] - self._seen[severity, code])
+        return _LIMITS[severity] - self._seen[severity, code]
 
     def count_only(self, severity: Severity, code: str, number: int) -> None:
-        """Count ``number`` more findings of a kind whose limit is reached."""
-        self._seen[severity, code] += number
+        """Count ``number`` more findings of a kind without making them."""
+        self._unlisted[severity, code] += number
 
     @property
     def fault_count(self) -> int:
         """Number of faults, also those beyond the limit."""
-        return sum(n for (severity, _), n in self._seen.items() if severity is Severity.FAULT)
+        every = self._seen + self._unlisted
+        return sum(n for (severity, _), n in every.items() if severity is Severity.FAULT)
 
     def findings(self) -> tuple[Finding, ...]:
         """Return the findings, with one line for each kind that went beyond its limit."""
@@ -48,11 +52,11 @@ class FindingLog:
             Finding(
                 severity=severity,
                 code=code,
-                message=f"{seen - _LIMITS[severity]:,} more of this kind are not listed.",
+                message=f"{unlisted:,} more of this kind are not listed.",
                 remedy="Correct those listed and check again.",
             )
-            for (severity, code), seen in self._seen.items()
-            if seen > _LIMITS[severity]
+            for (severity, code), unlisted in self._unlisted.items()
+            if unlisted
         ]
         return (*self._kept, *rest)
 

@@ -58,6 +58,7 @@ class Code(StrEnum):
     SIMILAR_ID = "similar_id"
     BLANKS_IN_ID = "blanks_in_id"
     CONTROL_CHARACTER = "control_character"
+    SEPARATOR_IN_ID = "separator_in_id"
     ID_OF_A_BASE = "id_of_a_base"
     MISSING_COORDINATE = "missing_coordinate"
     UNREADABLE_COORDINATE = "unreadable_coordinate"
@@ -149,6 +150,7 @@ CODE_MEANINGS: Mapping[Code, tuple[Severity, str]] = MappingProxyType(
         Code.SIMILAR_ID: (_W, "Two ids differ only in capitals or blanks."),
         Code.BLANKS_IN_ID: (_W, "An id begins or ends with blanks."),
         Code.CONTROL_CHARACTER: (_F, "An id holds a character that cannot be seen."),
+        Code.SEPARATOR_IN_ID: (_F, "An inspector's id holds `;` or `,`, which part ids."),
         Code.ID_OF_A_BASE: (_F, "A site has the id of a base."),
         Code.MISSING_COORDINATE: (_F, "A coordinate is empty."),
         Code.UNREADABLE_COORDINATE: (_F, "A coordinate is not a number."),
@@ -213,7 +215,7 @@ def _shown(value: object) -> str:
     return text if len(text) <= _SHOWN else f"{text[: _SHOWN - 1]}…"
 
 
-def new_finding(
+def new_finding(  # noqa: PLR0913 - a finding has that many sides
     code: Code,
     message: str,
     remedy: str,

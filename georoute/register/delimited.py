@@ -15,7 +15,7 @@ from typing import TYPE_CHECKING
 
 from georoute.register.codes import Code, new_finding
 from georoute.register.columns import folded
-from georoute.register.tables import RawRow, RawTable, TableFault, drop_empty_rows
+from georoute.register.tables import RawRow, RawTable, UnreadableFileError, drop_empty_rows
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -56,12 +56,12 @@ def read_delimited(data: bytes, *, known: KnownHeaders) -> RawTable:
 
     Raises
     ------
-    TableFault
+    UnreadableFileError
         If the bytes are not text, or there is nothing in them.
     """
     text, notes = _decode(data)
     if not text.strip():
-        raise TableFault([_empty()])
+        raise UnreadableFileError([_empty()])
     separator = _separator(text, known)
     if separator != ",":
         notes.append(
@@ -74,7 +74,7 @@ def read_delimited(data: bytes, *, known: KnownHeaders) -> RawTable:
     records, faults = _records(text, separator)
     start = next((k for k, cells in enumerate(records) if any(c.strip() for c in cells)), None)
     if start is None:
-        raise TableFault(faults or [_empty()])
+        raise UnreadableFileError(faults or [_empty()])
     headers = tuple(records[start])
     rows = [RawRow(number=k + 1, cells=tuple(records[k])) for k in range(start + 1, len(records))]
     decimal_comma = separator != "," and _has_decimal_comma(headers, rows, known)
@@ -114,14 +114,14 @@ def _decode(data: bytes) -> tuple[str, list[Finding]]:
         if data.startswith(mark):
             text = _decoded(data[len(mark) :], encoding)
             if text is None:
-                raise TableFault([_not_text()])
+                raise UnreadableFileError([_not_text()])
             return text, [_encoding_note(f"the file begins with a byte order mark of {word}")]
     text = _decoded(data, "utf-8")
     if text is not None:
         return text, []
     text = _decoded(data, "cp1252")
     if text is None or _looks_binary(text):
-        raise TableFault([_not_text()])
+        raise UnreadableFileError([_not_text()])
     return text, [
         _encoding_note(
             "the file is not UTF-8; it was read as Windows-1252 (Western European)",

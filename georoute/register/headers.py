@@ -72,7 +72,7 @@ class _Finder:
         )
 
     def find_duplicates(self) -> None:
-        """Refuse headers that stand twice; which of the two would be read?"""
+        """Refuse headers that stand twice: it is open which of the two is meant."""
         seen: dict[str, int] = {}
         for k, word in enumerate(self.folded):
             if not word:

@@ -37,8 +37,7 @@ class _Ids:
         if visit_id in self.visits:
             return (
                 Code.DUPLICATE_VISIT,
-                f"id and task together read like those of row {self.visits[visit_id]}: "
-                f"`{visit_id}`",
+                f"id and task read like those of row {self.visits[visit_id]}: `{visit_id}`",
                 "write another sign than `|` in the id or in the task",
             )
         if site_id in self.base_ids:

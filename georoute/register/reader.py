@@ -15,7 +15,8 @@ from georoute.register.delimited import read_delimited
 from georoute.register.headers import known_headers, lay_out
 from georoute.register.ids import compare_ids
 from georoute.register.rows import parse_rows
-from georoute.register.tables import TableFault
+from georoute.register.sources import bytes_of
+from georoute.register.tables import UnreadableFileError
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -38,7 +39,6 @@ DEFAULT_ACCESS_S = 5 * 60.0
 _DELIMITED = frozenset({".csv", ".tsv", ".txt"})
 _WORKBOOK = frozenset({".xlsx", ".xlsm"})
 _OLD_WORKBOOK = frozenset({".xls", ".xlsb"})
-_FOLDERS = frozenset({".gdb"})
 _SIDE_FILES = (".dbf", ".shx", ".prj", ".cpg")
 """What belongs to a shapefile besides its .shp, in the order it is hashed."""
 
@@ -167,7 +167,7 @@ def check_register(  # noqa: PLR0913 - as read_register
 def _read(path: Path, settings: _Settings) -> tuple[Register | None, tuple[Finding, ...]]:
     try:
         table, digest = _load(path, settings)
-    except TableFault as fault:
+    except UnreadableFileError as fault:
         return None, _sorted(fault.findings, path)
     layout = lay_out(table, mapping=settings.columns)
     rows, row_findings = parse_rows(table, layout, programme=settings.programme)
@@ -207,7 +207,7 @@ def _sorted(findings: Sequence[Finding], path: Path) -> tuple[Finding, ...]:
 def _load(path: Path, settings: _Settings) -> tuple[RawTable, str]:
     """Read the table of a file, and its hash; readers are imported where they are used."""
     suffix = path.suffix.casefold()
-    data = _bytes_of(path)
+    data = bytes_of(path)
     digest = hashlib.sha256(data)
     unused = []
     if suffix in _DELIMITED:
@@ -224,7 +224,7 @@ def _load(path: Path, settings: _Settings) -> tuple[RawTable, str]:
             f"`{suffix}` workbooks cannot be read",
             "save it as .xlsx in the spreadsheet program",
         )
-        raise TableFault([fault])
+        raise UnreadableFileError([fault])
     else:
         from georoute.register.vector import read_vector  # noqa: PLC0415 - slow to import
 
@@ -250,40 +250,11 @@ def _not_used(name: str, value: str) -> Finding:
     )
 
 
-def _bytes_of(path: Path) -> bytes:
-    """Read a file whole; a folder is read only where a format is one."""
-    try:
-        if path.is_dir() and path.suffix.casefold() in _FOLDERS:
-            return b"".join(part.read_bytes() for part in sorted(path.iterdir()) if part.is_file())
-        return path.read_bytes()
-    except FileNotFoundError as error:
-        fault = new_finding(
-            Code.FILE_NOT_FOUND,
-            "there is no such file",
-            f"look at the path; it was looked for from the folder {_folder_words(path)}",
-        )
-        raise TableFault([fault]) from error
-    except IsADirectoryError as error:
-        fault = new_finding(Code.NOT_READABLE, "this is a folder", "name the file in it")
-        raise TableFault([fault]) from error
-    except (OSError, ValueError) as error:
-        reason = getattr(error, "strerror", None) or str(error)
-        fault = new_finding(
-            Code.NOT_READABLE,
-            f"the file cannot be read: {reason}",
-            "close the program that holds it, or ask for the right to read it",
-        )
-        raise TableFault([fault]) from error
-
-
-def _folder_words(path: Path) -> str:
-    return f"`{path.parent}`" if path.parent != Path() else "you are in"
-
-
 def _locate(
     table: RawTable, layout: Layout, rows: Sequence[ParsedRow], settings: _Settings
 ) -> tuple[Located | None, list[Finding]]:
-    from georoute.register.places import find_crs, locate  # noqa: PLC0415 - slow to import
+    from georoute.register.crs import find_crs  # noqa: PLC0415 - slow to import
+    from georoute.register.places import locate  # noqa: PLC0415 - slow to import
 
     crs = find_crs(stated=table.crs, wanted=settings.crs, needed=table.has_geometry)
     findings = list(crs.findings)
@@ -298,7 +269,7 @@ def _locate(
     return located, [*findings, *located.findings]
 
 
-def _register(  # noqa: PLR0913 - the one place where all parts come together
+def _register(
     path: Path,
     digest: str,
     layout: Layout,

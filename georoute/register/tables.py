@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from datetime import date, datetime, time
 from typing import TYPE_CHECKING
 
-from georoute.errors import RegisterError
+from georoute.errors import InputError
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -19,7 +19,7 @@ __all__ = [
     "Cell",
     "RawRow",
     "RawTable",
-    "TableFault",
+    "UnreadableFileError",
     "Unusable",
     "cell_text",
     "drop_empty_rows",
@@ -72,7 +72,7 @@ class RawTable:
     crs: str = ""
 
 
-class TableFault(RegisterError):
+class UnreadableFileError(InputError):
     """A file that cannot be read at all; the reader of registers turns it into findings."""
 
     def __init__(self, findings: Sequence[Finding]) -> None:

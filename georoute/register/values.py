@@ -57,7 +57,7 @@ def _unusable(cell: Unusable) -> Refusal:
     )
 
 
-def read_number(cell: Cell, *, decimal_comma: bool) -> float | Refusal:
+def read_number(cell: Cell, *, decimal_comma: bool) -> float | Refusal:  # noqa: PLR0911 - as many
     """Read a number from a cell that is not blank.
 
     Parameters

@@ -13,7 +13,7 @@ import shapely
 from pyogrio.errors import DataLayerError, DataSourceError
 
 from georoute.register.codes import Code, nearest_words, new_finding
-from georoute.register.tables import Cell, RawRow, RawTable, TableFault, drop_empty_rows
+from georoute.register.tables import Cell, RawRow, RawTable, UnreadableFileError, drop_empty_rows
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -60,11 +60,11 @@ def read_vector(path: Path, *, layer: str | None) -> RawTable:
 
     Raises
     ------
-    TableFault
+    UnreadableFileError
         If the file or the layer cannot be read.
     """
     if path.is_file() and path.stat().st_size == 0:
-        raise TableFault([_empty("the file is empty")])
+        raise UnreadableFileError([_empty("the file is empty")])
     with warnings.catch_warnings(record=True) as remarks:
         warnings.simplefilter("always")
         try:
@@ -74,10 +74,10 @@ def read_vector(path: Path, *, layer: str | None) -> RawTable:
                 path, layer=name, datetime_as_string=True, force_2d=True, **options
             )
             shapes = _shapes(geometries)
-        except TableFault:
+        except UnreadableFileError:
             raise
         except _GDAL_ERRORS as error:
-            raise TableFault([_unreadable(path, str(error))]) from error
+            raise UnreadableFileError([_unreadable(path, str(error))]) from error
     notes += _remarks([str(remark.message) for remark in remarks])
     headers = tuple(str(field) for field in meta["fields"])
     cells = _cell_columns(columns, meta)
@@ -129,7 +129,7 @@ def _choose_layer(path: Path, wanted: str | None) -> tuple[str, list[Finding]]:
     names = [name for name, _ in found]
     listed = ", ".join(f"`{name}`" for name in names)
     if not names:
-        raise TableFault([_empty("the file has no layer")])
+        raise UnreadableFileError([_empty("the file has no layer")])
     if wanted is not None:
         if wanted in names:
             return wanted, []
@@ -140,7 +140,7 @@ def _choose_layer(path: Path, wanted: str | None) -> tuple[str, list[Finding]]:
             column="layer",
             value=wanted,
         )
-        raise TableFault([fault])
+        raise UnreadableFileError([fault])
     chosen = next((name for name, kind in found if kind is not None), names[0])
     if len(names) == 1:
         return chosen, []

@@ -19,7 +19,7 @@ from georoute.register.tables import (
     Cell,
     RawRow,
     RawTable,
-    TableFault,
+    UnreadableFileError,
     Unusable,
     drop_empty_rows,
     is_blank,
@@ -77,11 +77,11 @@ def read_workbook(data: bytes, *, sheet: str | None) -> RawTable:
 
     Raises
     ------
-    TableFault
+    UnreadableFileError
         If the file is no workbook, has no such sheet, or the sheet is empty.
     """
     if not data:
-        raise TableFault([_empty("the file is empty")])
+        raise UnreadableFileError([_empty("the file is empty")])
     try:
         values = _open(data, values=True)
         name, notes = _choose_sheet(values, sheet)
@@ -89,10 +89,10 @@ def read_workbook(data: bytes, *, sheet: str | None) -> RawTable:
         values.close()
         if _has_formulas(data):
             rows = _mark_formulas(rows, data, name)
-    except TableFault:
+    except UnreadableFileError:
         raise
     except _DAMAGED as error:
-        raise TableFault([_damaged()]) from error
+        raise UnreadableFileError([_damaged()]) from error
     return _table(rows, notes, name)
 
 
@@ -120,7 +120,7 @@ def _open(data: bytes, *, values: bool) -> Workbook:
 def _choose_sheet(book: Workbook, wanted: str | None) -> tuple[str, list[Finding]]:
     names = [sheet.title for sheet in book.worksheets]
     if not names:
-        raise TableFault([_empty("the workbook has no sheet with cells")])
+        raise UnreadableFileError([_empty("the workbook has no sheet with cells")])
     listed = ", ".join(f"`{name}`" for name in names)
     if wanted is not None:
         if wanted in names:
@@ -132,7 +132,7 @@ def _choose_sheet(book: Workbook, wanted: str | None) -> tuple[str, list[Finding
             column="sheet",
             value=wanted,
         )
-        raise TableFault([fault])
+        raise UnreadableFileError([fault])
     if len(names) == 1:
         return names[0], []
     note = new_finding(
@@ -205,7 +205,7 @@ def _formula_text(value: object) -> str:
 def _table(rows: Sequence[tuple[Cell, ...]], notes: list[Finding], name: str) -> RawTable:
     start = next((k for k, row in enumerate(rows) if not all(map(is_blank, row))), None)
     if start is None:
-        raise TableFault([_empty(f"the sheet `{name}` is empty")])
+        raise UnreadableFileError([_empty(f"the sheet `{name}` is empty")])
     width = max(map(_used, rows[start:]))
     body = [
         RawRow(number=k + 1, cells=_fitted(rows[k], width)) for k in range(start + 1, len(rows))

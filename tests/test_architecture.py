@@ -69,7 +69,9 @@ def test_functions_are_short() -> None:
 
 
 def test_public_functions_that_raise_say_so() -> None:
-    assert breaches(PACKAGE, house.undocumented_raises) == []
+    # A command's docstring is its help text, and the exit codes have a table of their own.
+    files = [path for path in PACKAGE if path.parent.name != "cli"]
+    assert breaches(files, house.undocumented_raises) == []
 
 
 def test_public_names_are_exported() -> None:

@@ -56,13 +56,16 @@ def test_the_register_has_the_sites_it_should(rows: list[script.Row]) -> None:
 
 
 def test_sites_lie_beside_the_street_of_their_address(rows: list[script.Row]) -> None:
-    stretches = script.read_stretches(script.EXTRACT)
+    by_street: dict[str, list[script.Stretch]] = {}
+    for stretch in script.read_stretches(script.EXTRACT):
+        by_street.setdefault(stretch.street, []).append(stretch)
     for row in rows:
         place = (float(row["lon"]), float(row["lat"]))
         away = [
             distance_m(place, stretch)
+            for street, stretches in by_street.items()
+            if row["address"].startswith(street + " ")
             for stretch in stretches
-            if row["address"].startswith(stretch.street + " ")
         ]
         assert 2.0 <= min(away) <= 11.0, row
 

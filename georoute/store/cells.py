@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import json
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import date, datetime, time
 from enum import StrEnum
 from types import MappingProxyType, NoneType, UnionType
@@ -29,10 +29,12 @@ Cell = str | int | float | None
 class Codec:
     """How values of one type become cells and cells become values.
 
-    ``sql`` is the column type of OGC 12-128 (GeoPackage), table 1. ``write`` and ``read`` never
-    see ``None``: an empty cell stands for it where ``optional`` is true.
+    ``kind`` is the type of the values, ``object`` for collections; ``sql`` is the column type of
+    OGC 12-128 (GeoPackage), table 1. ``write`` and ``read`` never see ``None``: an empty cell
+    stands for it where ``optional`` is true.
     """
 
+    kind: type
     sql: str
     write: Callable[[Any], Cell]
     read: Callable[[Any, ZoneInfo], Any]
@@ -110,16 +112,25 @@ def _read_interval(text: str, zone: ZoneInfo) -> OpenInterval:
     return OpenInterval(opens=read_moment(opens, zone), closes=read_moment(closes, zone))
 
 
+def _scalar(
+    kind: type, sql: str, write: Callable[[Any], Cell], read: Callable[[Any, ZoneInfo], Any]
+) -> Codec:
+    return Codec(kind=kind, sql=sql, write=write, read=read)
+
+
 _SCALARS: Mapping[object, Codec] = MappingProxyType(
     {
-        str: Codec(sql="TEXT", write=str, read=_checked(str)),
-        int: Codec(sql="INTEGER", write=int, read=_checked(int)),
-        float: Codec(sql="REAL", write=float, read=_read_float),
-        bool: Codec(sql="BOOLEAN", write=int, read=_read_bool),
-        date: Codec(sql="DATE", write=date.isoformat, read=lambda c, _z: date.fromisoformat(c)),
-        time: Codec(sql="TEXT", write=time.isoformat, read=lambda c, _z: time.fromisoformat(c)),
-        datetime: Codec(sql="TEXT", write=write_moment, read=read_moment),
-        OpenInterval: Codec(sql="TEXT", write=_write_interval, read=_read_interval),
+        codec.kind: codec
+        for codec in (
+            _scalar(str, "TEXT", str, _checked(str)),
+            _scalar(int, "INTEGER", int, _checked(int)),
+            _scalar(float, "REAL", float, _read_float),
+            _scalar(bool, "BOOLEAN", int, _read_bool),
+            _scalar(date, "DATE", date.isoformat, lambda c, _z: date.fromisoformat(c)),
+            _scalar(time, "TEXT", time.isoformat, lambda c, _z: time.fromisoformat(c)),
+            _scalar(datetime, "TEXT", write_moment, read_moment),
+            _scalar(OpenInterval, "TEXT", _write_interval, _read_interval),
+        )
     }
 )
 
@@ -138,7 +149,7 @@ def _pairs(first: Codec, second: Codec) -> Codec:
         found = json.loads(cell).items()
         return MappingProxyType({first.of_cell(k, zone): second.of_cell(v, zone) for k, v in found})
 
-    return Codec(sql="TEXT", write=write, read=read)
+    return Codec(kind=object, sql="TEXT", write=write, read=read)
 
 
 def _many(collection: type, element: Codec) -> Codec:
@@ -151,7 +162,7 @@ def _many(collection: type, element: Codec) -> Codec:
     def read(cell: str, zone: ZoneInfo) -> object:
         return collection(element.of_cell(item, zone) for item in json.loads(cell))
 
-    return Codec(sql="TEXT", write=write, read=read)
+    return Codec(kind=object, sql="TEXT", write=write, read=read)
 
 
 def _sort_key(cell: Cell) -> tuple[str, float, str]:
@@ -168,7 +179,7 @@ def _fixed(elements: tuple[Codec, ...]) -> Codec:
     def read(cell: Any, zone: ZoneInfo) -> object:  # noqa: ANN401 - as ``write``
         return tuple(c.of_cell(item, zone) for c, item in zip(elements, cell, strict=True))
 
-    return Codec(sql="TEXT", write=write, read=read)
+    return Codec(kind=object, sql="TEXT", write=write, read=read)
 
 
 def _collection(origin: object, args: tuple[object, ...]) -> Codec:
@@ -192,11 +203,11 @@ def codec_for(hint: object) -> Codec:
     if hint in _SCALARS:
         return _SCALARS[hint]
     if isinstance(hint, type) and issubclass(hint, StrEnum):
-        return Codec(sql="TEXT", write=lambda v: str(v.value), read=lambda c, _z: hint(c))
+        return _scalar(str, "TEXT", lambda v: str(v.value), lambda c, _z: hint(c))
     origin, args = get_origin(hint), get_args(hint)
     if origin in {Union, UnionType} and NoneType in args:
         inner = codec_for(next(arg for arg in args if arg is not NoneType))
-        return Codec(sql=inner.sql, write=inner.write, read=inner.read, optional=True)
+        return replace(inner, optional=True)
     if origin in {frozenset, tuple, Mapping}:
         return _collection(origin, args)
     msg = f"{hint}: no way to write this type into a plan file is known"

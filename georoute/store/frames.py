@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from datetime import date, datetime, time
+from datetime import date, datetime
 from typing import TYPE_CHECKING, Any
 
 import geopandas as gpd
@@ -23,20 +23,20 @@ __all__ = ["to_geodataframes"]
 WGS84 = "EPSG:4326"
 
 
-def _first(values: Sequence[object]) -> object:
-    return next((value for value in values if value is not None), None)
-
-
 def _series(codec: Codec, values: Sequence[Any], zone: str) -> pd.Series[Any]:
     """Return one column: times in the programme's zone, dates as days, the rest as in the file."""
-    example = _first(values)
-    if isinstance(example, datetime):
+    if codec.kind is datetime:
         return pd.Series(pd.to_datetime(list(values), utc=True).tz_convert(zone))
-    if isinstance(example, date):
+    if codec.kind is date:
         return pd.Series(pd.to_datetime(list(values)))
-    if isinstance(example, time) or not isinstance(example, (str, bool, int, float)):
-        return pd.Series([codec.to_cell(value) for value in values], dtype=object)
-    return pd.Series(list(values))
+    cells = [codec.to_cell(value) for value in values]
+    if codec.kind is bool:
+        return pd.Series(cells, dtype="boolean" if None in cells else "bool")
+    if codec.kind is int:
+        return pd.Series(cells, dtype="Int64" if None in cells else "int64")
+    if codec.kind is float:
+        return pd.Series(cells, dtype="float64")
+    return pd.Series(cells, dtype="str")
 
 
 def _shape_of(geometry: str) -> Callable[[Shape | None], shapely.Geometry | None]:

@@ -247,7 +247,13 @@ def sheets_of(plan: Plan) -> tuple[Sheet, ...]:
     places = _Places(plan)
     keys = _extra_keys(plan)
     table = TABLES["sites"]
-    taken = ["fid", "geom", *table.added, *(column.name for column in columns_of(table))]
+    taken = [
+        "fid",
+        "geom",
+        "geometry",
+        *table.added,
+        *(column.name for column in columns_of(table)),
+    ]
     names = _free_names(keys, taken)
     bases = plan.programme.bases
     return (

@@ -36,7 +36,7 @@ class ShiftRules:
 
     @property
     def length_s(self) -> float:
-        """Seconds from start to end on the clock; an end at or before the start is next day's."""
+        """Return seconds from start to end; an end at or before the start is the next day's."""
         return _clock_length_s(self.start, self.end)
 
 

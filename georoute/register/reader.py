@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import hashlib
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 from types import MappingProxyType
@@ -11,11 +10,10 @@ from typing import TYPE_CHECKING
 from georoute.domain.sites import Register, Site, Visit, visit_id_of
 from georoute.errors import RegisterError
 from georoute.register.codes import Code, new_finding
-from georoute.register.delimited import read_delimited
-from georoute.register.headers import known_headers, lay_out
+from georoute.register.headers import lay_out
 from georoute.register.ids import compare_ids
+from georoute.register.loading import load_table
 from georoute.register.rows import parse_rows
-from georoute.register.sources import bytes_of
 from georoute.register.tables import UnreadableFileError
 
 if TYPE_CHECKING:
@@ -35,12 +33,6 @@ DEFAULT_WORK_S = 30 * 60.0
 
 DEFAULT_ACCESS_S = 5 * 60.0
 """Seconds of access where neither the row nor a programme says; a choice of ours, to be edited."""
-
-_DELIMITED = frozenset({".csv", ".tsv", ".txt"})
-_WORKBOOK = frozenset({".xlsx", ".xlsm"})
-_OLD_WORKBOOK = frozenset({".xls", ".xlsb"})
-_SIDE_FILES = (".dbf", ".shx", ".prj", ".cpg")
-"""What belongs to a shapefile besides its .shp, in the order it is hashed."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -166,7 +158,9 @@ def check_register(  # noqa: PLR0913 - as read_register
 
 def _read(path: Path, settings: _Settings) -> tuple[Register | None, tuple[Finding, ...]]:
     try:
-        table, digest = _load(path, settings)
+        table, digest = load_table(
+            path, mapping=settings.columns, sheet=settings.sheet, layer=settings.layer
+        )
     except UnreadableFileError as fault:
         return None, _sorted(fault.findings, path)
     layout = lay_out(table, mapping=settings.columns)
@@ -202,52 +196,6 @@ def _sorted(findings: Sequence[Finding], path: Path) -> tuple[Finding, ...]:
     """Order findings by row, those of the file as a whole first, and name the file."""
     named = (replace(finding, file=str(path)) for finding in findings)
     return tuple(sorted(named, key=lambda finding: finding.row or 0))
-
-
-def _load(path: Path, settings: _Settings) -> tuple[RawTable, str]:
-    """Read the table of a file, and its hash; readers are imported where they are used."""
-    suffix = path.suffix.casefold()
-    data = bytes_of(path)
-    digest = hashlib.sha256(data)
-    unused = []
-    if suffix in _DELIMITED:
-        table = read_delimited(data, known=known_headers(settings.columns))
-        unused = [("sheet", settings.sheet), ("layer", settings.layer)]
-    elif suffix in _WORKBOOK:
-        from georoute.register.workbook import read_workbook  # noqa: PLC0415 - slow to import
-
-        table = read_workbook(data, sheet=settings.sheet)
-        unused = [("layer", settings.layer)]
-    elif suffix in _OLD_WORKBOOK:
-        fault = new_finding(
-            Code.UNKNOWN_FORMAT,
-            f"`{suffix}` workbooks cannot be read",
-            "save it as .xlsx in the spreadsheet program",
-        )
-        raise UnreadableFileError([fault])
-    else:
-        from georoute.register.vector import read_vector  # noqa: PLC0415 - slow to import
-
-        table = read_vector(path, layer=settings.layer)
-        for side in _SIDE_FILES if suffix == ".shp" else ():
-            digest.update(path.with_suffix(side).read_bytes() if _is_side(path, side) else b"")
-        unused = [("sheet", settings.sheet)]
-    notes = [_not_used(name, value) for name, value in unused if value is not None]
-    return replace(table, findings=(*table.findings, *notes)), digest.hexdigest()
-
-
-def _is_side(path: Path, side: str) -> bool:
-    return path.with_suffix(side).is_file()
-
-
-def _not_used(name: str, value: str) -> Finding:
-    return new_finding(
-        Code.SETTING_NOT_USED,
-        f"the setting `{name}` does not apply to a file of this format",
-        "take the setting out",
-        column=name,
-        value=value,
-    )
 
 
 def _locate(

@@ -27,7 +27,18 @@ class OutsideCheck:
     sources: tuple[str, ...]
 
 
-def marked_sources(nodes: list[ast.expr]) -> tuple[str, ...]:
+def constants(tree: ast.Module) -> dict[str, str]:
+    """Return the texts that a module gives a name to."""
+    return {
+        ast.unparse(statement.targets[0]): statement.value.value
+        for statement in tree.body
+        if isinstance(statement, ast.Assign)
+        and isinstance(statement.value, ast.Constant)
+        and isinstance(statement.value.value, str)
+    }
+
+
+def marked_sources(nodes: list[ast.expr], named: dict[str, str]) -> tuple[str, ...]:
     """Return the texts of all ``pytest.mark.source`` among decorators or marks."""
     calls = [
         call
@@ -35,12 +46,16 @@ def marked_sources(nodes: list[ast.expr]) -> tuple[str, ...]:
         for call in ast.walk(node)
         if isinstance(call, ast.Call) and ast.unparse(call.func) == "pytest.mark.source"
     ]
-    return tuple(str(ast.literal_eval(call.args[0])) for call in calls)
+    return tuple(
+        named.get(ast.unparse(call.args[0])) or str(ast.literal_eval(call.args[0]))
+        for call in calls
+    )
 
 
 def outside_checks(path: Path, source: str) -> Iterator[OutsideCheck]:
     """Yield the tests of a file with the sources they, their class or their module name."""
     tree = ast.parse(source)
+    named = constants(tree)
     module = [
         statement.value
         for statement in tree.body
@@ -52,7 +67,7 @@ def outside_checks(path: Path, source: str) -> Iterator[OutsideCheck]:
         if isinstance(node, ast.ClassDef):
             waiting = [(member, [*marks, *node.decorator_list]) for member in node.body] + waiting
         elif isinstance(node, ast.FunctionDef) and node.name.startswith("test_"):
-            sources = marked_sources([*marks, *node.decorator_list])
+            sources = marked_sources([*marks, *node.decorator_list], named)
             yield OutsideCheck(test=f"{path.name}::{node.name}", sources=sources)
 
 
@@ -86,6 +101,7 @@ def test_every_outside_check_names_its_source() -> None:
         ),
         ('pytestmark = pytest.mark.source("a book")\ndef test_a(): ...', ("a book",)),
         ('pytestmark = [pytest.mark.slow, pytest.mark.source("x")]\ndef test_a(): ...', ("x",)),
+        ('BOOK = "a book"\n@pytest.mark.source(BOOK)\ndef test_a(): ...', ("a book",)),
         ('@pytest.mark.source("y")\nclass TestA:\n    def test_b(self): ...', ("y",)),
     ],
 )

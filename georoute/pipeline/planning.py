@@ -17,6 +17,7 @@ from georoute.errors import AuditError, InputError
 from georoute.measure import measure
 from georoute.pipeline.budget import Budget
 from georoute.pipeline.search import search
+from georoute.pipeline.warm_up import warm_up
 from georoute.problem import pack
 from georoute.problem.capacity import capacity
 from georoute.problem.reasons import cannot_fit, explain_unplaced, reason_text
@@ -200,6 +201,8 @@ def make_plan(
         The finished plan broke one of its own rules (a defect of the program, never of the input).
     """
     programme = prepared.packed.programme
+    progress("compile", fraction=0.0)
+    warm_up(prepared.packed.problem, programme.effort)
     budget = Budget(should_stop, seconds=programme.effort.seconds)
     found = search(
         prepared.packed,

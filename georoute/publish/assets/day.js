@@ -1,0 +1,132 @@
+// The day page: plates, cord and the run list that follow each other.
+function makePlate(stop) {
+  const plate = html("button", `plate plate-${stop.state}`);
+  plate.type = "button";
+  plate.append(html("span", "plate-number", String(stop.number)));
+  plate.append(html("span", "plate-time", stop.arrive));
+  if (stop.note) plate.append(html("span", "plate-note", stop.note));
+  plate.append(html("span", "unseen", ` ${stop.name}`));
+  return plate;
+}
+
+function makeBasePlate(base) {
+  const plate = html("div", "base-plate");
+  plate.append(html("span", "base-name", base.name), html("span", "base-times", base.times));
+  return plate;
+}
+
+function drawDay(map) {
+  const { tour } = data;
+  const state = { current: 0 };
+  const places = tour.bases.concat(tour.stops);
+  const labels = tour.bases.map(makeBasePlate).concat(tour.stops.map(makePlate));
+  const sheet = new SurveySheet((self) => paintDay(self, map, places, labels, state));
+  const whole = L.latLngBounds(places.map((place) => [place.lat, place.lon]));
+  const padding = () => (map.getSize().x < 560 ? [34, 40] : [96, 60]);
+  const fit = () => map.fitBounds(whole, { padding: padding(), maxZoom: 15, animate: false });
+  const fitLeg = (number) => {
+    const leg = tour.legs[number - 1];
+    const ends = [[places[leg.from].lat, places[leg.from].lon],
+      [places[leg.to].lat, places[leg.to].lon]];
+    map.fitBounds(L.latLngBounds(ends), { padding: [54, 54], maxZoom: 15, animate: false });
+  };
+
+  fit(); // a layer is set up only once the map has a view
+  sheet.addTo(map);
+  sheet.labels.append(...labels);
+  sheet.refresh();
+
+  function show(number, { focusPlate = false, focusRow = false, zoom = isPhone() } = {}) {
+    state.current = number;
+    for (const row of document.querySelectorAll("[data-stop]")) {
+      const here = Number(row.dataset.stop) === number;
+      if (here) row.setAttribute("aria-current", "true");
+      else row.removeAttribute("aria-current");
+    }
+    const stop = tour.stops[number - 1];
+    if (zoom) fitLeg(number);
+    else map.panInside([stop.lat, stop.lon], { padding: [70, 60], animate: false });
+    sheet.refresh();
+    document.getElementById("map-news").textContent = fill(words.map_shown, stop);
+    const row = document.getElementById(`stop-${number}`);
+    if (focusPlate) labels[tour.bases.length + number - 1].focus({ preventScroll: true });
+    if (focusRow) row.querySelector("button").focus({ preventScroll: true });
+    if (focusRow || isPhone()) {
+      // on a phone the drive to the stop comes first
+      if (isPhone()) row.previousElementSibling.scrollIntoView({ block: "start" });
+      else row.scrollIntoView({ block: "nearest" });
+    }
+  }
+
+  tour.stops.forEach((stop, k) => {
+    const plate = labels[tour.bases.length + k];
+    L.DomEvent.disableClickPropagation(plate);
+    plate.addEventListener("click", () => show(stop.number, { focusRow: true }));
+    plate.addEventListener("focus", () => {
+      if (plate.matches(":focus-visible")) {
+        map.panInside([stop.lat, stop.lon], { padding: [70, 60], animate: false });
+      }
+    });
+    const row = document.getElementById(`stop-${stop.number}`);
+    row.addEventListener("click", (event) => {
+      if (event.target.closest("a") || !window.getSelection().isCollapsed) return;
+      const byKey = event.target.closest("button") && event.detail === 0;
+      show(stop.number, { focusPlate: byKey });
+    });
+  });
+  const step = (by) => () => {
+    const last = tour.stops.length;
+    show(Math.min(last, Math.max(1, (state.current || (by > 0 ? 0 : last + 1)) + by)));
+  };
+  mapButtons({
+    in: () => map.zoomIn(), out: () => map.zoomOut(), fit, previous: step(-1), next: step(1),
+  });
+  openOnNextStop(tour, show);
+}
+
+// Planned times are instants, so the device's own zone does not matter.
+function openOnNextStop(tour, show) {
+  const next = tour.stops.find((stop) => stop.leave_ms > Date.now());
+  if (!next) return;
+  const row = document.getElementById(`stop-${next.number}`);
+  row.classList.add("next-stop");
+  row.querySelector(".next-mark").textContent = words.map_next_stop;
+  if (isPhone() || next.number > 1) show(next.number);
+}
+
+function paintDay(sheet, map, places, labels, state) {
+  const { tour } = data;
+  const points = places.map((place) => map.latLngToLayerPoint([place.lat, place.lon]));
+  const cords = svg("g", { class: `cords hue-${tour.hue}${tour.outlined ? " outlined" : ""}` });
+  const barbs = svg("g", {});
+  const segments = [];
+  for (const leg of tour.legs) {
+    const segment = aside(points[leg.from], points[leg.to], 2.6);
+    segments.push(segment);
+    const kind = leg.home ? "home" : "way";
+    cords.append(line(segment, `cord-edge ${kind}`, tour.dash));
+    cords.append(line(segment, `cord ${kind}`, tour.dash));
+    const long = Math.hypot(segment[2] - segment[0], segment[3] - segment[1]);
+    const shares = long > 260 ? [0.25, 0.75] : [0.5];
+    if (long > 30) for (const share of shares) barbs.append(barb(segment, share, 6));
+  }
+  const marks = svg("g", {});
+  const compact = map.getSize().x < 560 || map.getSize().y < 300;
+  sheet.labels.classList.toggle("compact", compact);
+  const items = points.map((point, k) => {
+    const number = k < tour.bases.length ? 0 : places[k].number;
+    const now = number !== 0 && number === state.current;
+    labels[k].classList.toggle("current", now);
+    if (number === 0) marks.append(target(Math.round(point.x), Math.round(point.y)));
+    else {
+      if (now) marks.append(svg("circle", { cx: point.x, cy: point.y, r: 10, class: "dot-ring" }));
+      marks.append(svg("circle", { cx: point.x, cy: point.y, r: 4.5, class: "dot" }));
+    }
+    const element = labels[k];
+    const anchors = [[point.x, point.y]];
+    return { element, anchors, w: element.offsetWidth, h: element.offsetHeight };
+  });
+  const dots = points.map((point) => [point.x, point.y]);
+  const leaders = setLabels(sheet, items, { dots, segments, weights: { dot: 160, cord: 0.55 } });
+  sheet.drawing.append(cords, barbs, leaders, marks);
+}

@@ -1,0 +1,103 @@
+"""The day page: one tour as a map, a run list and a time rule."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from georoute.publish.day_view import day_view
+from georoute.publish.frame import DataLayer, Page, SurveyMap
+from georoute.publish.looks import looks_of
+from georoute.publish.names import OVERVIEW_NAME, page_name
+
+if TYPE_CHECKING:
+    from georoute.domain.plan import DayTour
+    from georoute.publish.day_view import DayView
+    from georoute.publish.page_values import Edition
+
+__all__ = ["day_page", "view_of"]
+
+_SCRIPTS = ("base.js", "labels.js", "map.js", "day.js")
+_STYLES = ("page.css", "day.css")
+
+
+def view_of(edition: Edition, tour: DayTour) -> DayView:
+    """Return what the pages of a tour say."""
+    look = looks_of(edition.plan.programme.inspectors, tour.inspector_id, tour.day)
+    return day_view(edition.index, tour, look, edition.figures)
+
+
+def _island(edition: Edition, view: DayView) -> dict[str, object]:
+    """Return the data of the map: places (bases first, then stops) and legs between them."""
+    bases = [view.start_base]
+    if view.end_base.base_id != view.start_base.base_id:
+        bases.append(view.end_base)
+    words = edition.figures.words
+    out = f"{words('out')} {view.out}"
+    back = f"{words('back')} {view.back}"
+    times = [f"{out} · {back}"] if len(bases) == 1 else [out, back]
+    last = len(view.stops)
+    numbers = [0, *range(len(bases), len(bases) + last), len(bases) - 1]
+    return {
+        "words": words.for_scripts(),
+        "tour": {
+            "hue": view.look.hue,
+            "outlined": view.look.outlined,
+            "dash": view.look.dash,
+            "bases": [
+                {
+                    "name": base.name,
+                    "times": text,
+                    "lat": round(base.lat_deg, 6),
+                    "lon": edition.lon(base.lon_deg),
+                }
+                for base, text in zip(bases, times, strict=True)
+            ],
+            "stops": [
+                {
+                    "number": stop.number,
+                    "name": stop.name,
+                    "state": stop.state,
+                    "note": stop.note,
+                    "arrive": stop.arrive,
+                    "leave_ms": stop.leave_ms,
+                    "lat": round(stop.lat_deg, 6),
+                    "lon": edition.lon(stop.lon_deg),
+                }
+                for stop in view.stops
+            ],
+            "legs": [
+                {"from": numbers[k], "to": numbers[k + 1], "home": k == last}
+                for k in range(last + 1)
+            ],
+        },
+    }
+
+
+def day_page(edition: Edition, tour: DayTour) -> str:
+    """Return the day page of a tour as HTML."""
+    words = edition.figures.words
+    view = view_of(edition, tour)
+    page = Page(template="day.html", scripts=_SCRIPTS, styles=_STYLES)
+    survey_map = SurveyMap("map_name")
+    survey_map.add_child(DataLayer("drawDay"))
+    page.add_child(survey_map)
+    finish = words("finish_line", finish=view.finish, end=view.shift_end)
+    values = {
+        **edition.common(),
+        "title": words("day_title", date=view.date_long, inspector=view.inspector),
+        "day": view,
+        "overview_href": OVERVIEW_NAME,
+        "sheet_href": page_name("sheet", tour.day, edition.slugs[tour.inspector_id]),
+        "finish_line": finish,
+        "tell_line": words("tell_line", end=view.shift_end),
+        "rule_text": words(
+            "time_rule_text",
+            date=view.date_long,
+            out=view.out,
+            stops=len(view.stops),
+            back=view.back,
+            finish=view.finish,
+        ),
+        "about": [*edition.about(), words("library")],
+    }
+    return page.page_text(_island(edition, view), values)

@@ -1,0 +1,99 @@
+"""What every page of one publishing shares: the plan, its words and figures, and its imprint."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from georoute.publish.day_view import PlanIndex
+from georoute.publish.figures import Figures
+from georoute.publish.names import slugs_of
+from georoute.publish.words import words_for
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping
+    from datetime import datetime
+
+    from georoute.domain.plan import Plan
+
+__all__ = ["Edition", "near_lon"]
+
+_SHORT_HASH = 12
+
+
+def near_lon(lon_deg: float, reference_deg: float) -> float:
+    """Return a longitude within half a turn of a reference, so that no map spans the globe."""
+    return lon_deg - 360.0 * round((lon_deg - reference_deg) / 360.0)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Edition:
+    """One publishing of one plan in one language."""
+
+    plan: Plan
+    figures: Figures
+    index: PlanIndex
+    slugs: Mapping[str, str]
+    issued: datetime | None
+
+    @classmethod
+    def of(cls, plan: Plan, *, issued: datetime | None, language: str) -> Edition:
+        """Prepare ``plan`` for publishing.
+
+        Raises
+        ------
+        ValueError
+            There is no catalogue for the language.
+        """
+        return cls(
+            plan=plan,
+            figures=Figures.of(plan, words_for(language)),
+            index=PlanIndex.of(plan),
+            slugs=slugs_of(person.inspector_id for person in plan.programme.inspectors),
+            issued=issued or plan.provenance.issued,
+        )
+
+    def lon(self, lon_deg: float) -> float:
+        """Return a longitude on the same side of the date line as the first base."""
+        return round(near_lon(lon_deg, self.plan.programme.bases[0].lon_deg), 6)
+
+    def travel_note(self) -> str:
+        """Return what the travel figures are, and their interval."""
+        words, travel = self.figures.words, self.plan.travel
+        if not travel.estimated:
+            return words("measured_note", source=travel.source)
+        if travel.low_factor == travel.high_factor:
+            return words("estimated_no_interval", source=travel.source)
+        low = self.figures.number(travel.low_factor, 2)
+        high = self.figures.number(travel.high_factor, 2)
+        return words("estimated_note", source=travel.source, low=low, high=high)
+
+    def about(self) -> list[str]:
+        """Return where the plan came from, line by line."""
+        words, made = self.figures.words, self.plan.provenance
+        rule = words(f"stop_rule_{made.stop_rule.name.lower()}")
+        return [
+            words("plan_id", plan=self.plan.plan_id),
+            words("made_with", version=made.version, seed=made.seed, effort=made.effort, rule=rule),
+            words(
+                "register_hash",
+                source=made.register_source,
+                digest=made.register_sha256[:_SHORT_HASH],
+            ),
+        ]
+
+    def common(self) -> dict[str, object]:
+        """Return the values that every template asks for."""
+        words = self.figures.words
+        return {
+            "words": words,
+            "marked": self.figures.marked,
+            "version": self.plan.provenance.version,
+            "plan_id": self.plan.plan_id,
+            "currency": self.figures.currency,
+            "programme": self.plan.programme.title,
+            "revision": words("revision", revision=self.plan.provenance.revision),
+            "issued": self.figures.issued(self.issued),
+            "travel_note": self.travel_note(),
+            "about": self.about(),
+        }

@@ -1,0 +1,97 @@
+"""Make the pages of a plan, write them, and clear away our own pages that it no longer has."""
+
+from __future__ import annotations
+
+import re
+from typing import TYPE_CHECKING
+
+from georoute.errors import OutputError
+from georoute.files import atomic_write_bytes
+from georoute.publish.day_page import day_page
+from georoute.publish.names import OVERVIEW_NAME, PAGE_PATTERN, page_name
+from georoute.publish.overview_page import overview_page
+from georoute.publish.page_values import Edition
+from georoute.publish.run_sheet import run_sheet
+
+if TYPE_CHECKING:
+    from collections.abc import Collection
+    from datetime import datetime
+    from pathlib import Path
+
+    from georoute.domain.plan import Plan
+
+__all__ = ["pages_of", "write_pages"]
+
+_HEAD_BYTES = 2_000
+"""The marks of a page of ours stand within this many bytes of its start."""
+
+_GENERATOR = re.compile(r'<meta name="generator" content="georoute [^"]*">')
+_PLAN = re.compile(r'<meta name="georoute-plan" content="([^"]*)">')
+
+
+def pages_of(plan: Plan, *, issued: datetime | None, language: str) -> dict[str, str]:
+    """Return the pages of a plan, by file name: the overview, then each tour's page and sheet.
+
+    Raises
+    ------
+    ValueError
+        There is no catalogue for the language.
+    """
+    edition = Edition.of(plan, issued=issued, language=language)
+    pages = {OVERVIEW_NAME: overview_page(edition)}
+    for tour in plan.tours:
+        person = edition.slugs[tour.inspector_id]
+        pages[page_name("day", tour.day, person)] = day_page(edition, tour)
+        pages[page_name("sheet", tour.day, person)] = run_sheet(edition, tour)
+    return pages
+
+
+def _plan_of(path: Path) -> str | None:
+    """Return the id of the plan that a page of ours shows; ``None`` for any other file."""
+    with path.open("rb") as file:
+        head = file.read(_HEAD_BYTES).decode("utf-8", "replace")
+    found = _PLAN.search(head)
+    return found.group(1) if found and _GENERATOR.search(head) else None
+
+
+def _ours(folder: Path) -> dict[str, str | None]:
+    """Return the files of a folder that are named like our pages, with the plan each shows."""
+    return {
+        path.name: _plan_of(path)
+        for path in sorted(folder.glob("*.html"))
+        if PAGE_PATTERN.fullmatch(path.name) and path.is_file()
+    }
+
+
+def _refuse_strangers(present: dict[str, str | None], names: Collection[str], folder: Path) -> None:
+    strangers = [name for name in names if name in present and present[name] is None]
+    if strangers:
+        msg = (
+            f"{folder} holds files that georoute did not make: {', '.join(strangers)}. Nothing "
+            "was written. Choose another folder, or move these files."
+        )
+        raise OutputError(msg)
+
+
+def write_pages(pages: dict[str, str], folder: Path, *, plan_id: str) -> tuple[Path, ...]:
+    """Write pages into a folder, overview last, and remove stale pages of the same plan.
+
+    Raises
+    ------
+    OutputError
+        The folder cannot be used, or a file there that we did not make is in the way.
+    """
+    try:
+        folder.mkdir(parents=True, exist_ok=True)
+        present = _ours(folder)
+    except OSError as error:
+        msg = f"The folder {folder} for the pages cannot be used: {error}. Choose another folder."
+        raise OutputError(msg) from error
+    _refuse_strangers(present, pages, folder)
+    # the overview last: it never links to a page that is not there yet
+    for name in sorted(pages, key=lambda name: name == OVERVIEW_NAME):
+        atomic_write_bytes(folder / name, pages[name].encode("utf-8", "replace"))
+    for name, shown in present.items():
+        if name not in pages and shown == plan_id:
+            (folder / name).unlink(missing_ok=True)
+    return tuple(folder / name for name in pages)

@@ -1,0 +1,183 @@
+"""The sketch map of a run sheet: where everything lies on paper, worked out beforehand."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from georoute.projection import local_plane
+from georoute.publish.placing import Scene, leader_ends, place_boxes
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from georoute.domain.sites import Base
+    from georoute.publish.day_view import DayView
+    from georoute.publish.words import Words
+
+__all__ = ["HEIGHT", "PLATE_HEIGHT", "WIDTH", "Plate", "Sketch", "sketch_of"]
+
+WIDTH = 700.0
+HEIGHT = 380.0
+PLATE_HEIGHT = 18.0
+_MARGIN_X, _MARGIN_Y = 92.0, 36.0
+_SMALLEST_SPAN_M = 400.0
+_LETTER = 6.3
+"""Width of a letter of a plate; the face may differ, so it is taken wide."""
+_PAD = 6.0
+_ASIDE = 2.2
+_SHORT_LEG = 28.0
+_LONGEST_SCALE = 130.0
+_CORNERS = np.array(
+    [
+        [WIDTH - 32.0, 0.0, 32.0, 52.0],  # north
+        [0.0, HEIGHT - 30.0, _LONGEST_SCALE + 20.0, 30.0],  # scale
+        [WIDTH - 290.0, HEIGHT - 18.0, 290.0, 18.0],  # what the lines are
+    ]
+)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Plate:
+    """A plate on paper: box, leader (x1, y1, x2, y2), and what it says; ``parted`` is where the
+    line between number and text stands. The plate of a base has no number.
+    """
+
+    x: float
+    y: float
+    width: float
+    leader: tuple[float, float, float, float]
+    number: str
+    text: str
+    state: str
+    parted: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Sketch:
+    """Everything on the sketch, in its own units; legs are (x1, y1, x2, y2, home)."""
+
+    plates: tuple[Plate, ...]
+    bases: tuple[tuple[float, float], ...]
+    legs: tuple[tuple[float, float, float, float, bool], ...]
+    barbs: tuple[str, ...]
+    scale_width: float
+    scale_text: str
+
+
+def _bases(view: DayView) -> list[Base]:
+    same = view.start_base.base_id == view.end_base.base_id
+    return [view.start_base] if same else [view.start_base, view.end_base]
+
+
+def _to_paper(view: DayView) -> tuple[NDArray[np.float64], float]:
+    """Return places on paper, shape (n, 2), bases first, and the metres of one unit."""
+    bases = _bases(view)
+    lon = np.array([b.lon_deg for b in bases] + [stop.lon_deg for stop in view.stops])
+    lat = np.array([b.lat_deg for b in bases] + [stop.lat_deg for stop in view.stops])
+    x_m, y_m = local_plane(lon, lat).forward(lon, lat)
+    wide = max(float(np.ptp(x_m)), _SMALLEST_SPAN_M)
+    high = max(float(np.ptp(y_m)), _SMALLEST_SPAN_M)
+    unit_m = max(wide / (WIDTH - 2 * _MARGIN_X), high / (HEIGHT - 2 * _MARGIN_Y))
+    x = WIDTH / 2 + (x_m - (x_m.max() + x_m.min()) / 2) / unit_m
+    y = HEIGHT / 2 - (y_m - (y_m.max() + y_m.min()) / 2) / unit_m
+    return np.column_stack([x, y]), unit_m
+
+
+def _legs(points: NDArray[np.float64], bases: int) -> NDArray[np.float64]:
+    """Return the legs in order, shape (stops + 1, 4), a little to the right of their way."""
+    order = [0, *range(bases, len(points)), bases - 1]
+    start, end = points[order[:-1]], points[order[1:]]
+    step = end - start
+    length = np.maximum(np.hypot(step[:, 0], step[:, 1]), 1e-9)[:, None]
+    aside = np.column_stack([-step[:, 1], step[:, 0]]) / length * _ASIDE
+    return np.column_stack([start + aside, end + aside])
+
+
+def _barb(leg: NDArray[np.float64]) -> str:
+    """Return the path of an arrow in the middle of a leg."""
+    x, y = (leg[0] + leg[2]) / 2, (leg[1] + leg[3]) / 2
+    angle = math.atan2(leg[3] - leg[1], leg[2] - leg[0])
+    corners = []
+    for along, across in ((6.0, 0.0), (-5.0, 4.2), (-2.2, 0.0), (-5.0, -4.2)):
+        px = x + along * math.cos(angle) - across * math.sin(angle)
+        py = y + along * math.sin(angle) + across * math.cos(angle)
+        corners.append(f"{px:.1f} {py:.1f}")
+    return f"M{'L'.join(corners)}Z"
+
+
+def _scale(unit_m: float, words: Words) -> tuple[float, str]:
+    """Return the longest round scale that fits, and its text."""
+    limit_m = _LONGEST_SCALE * unit_m
+    power = 10.0 ** math.floor(math.log10(limit_m))
+    metres = max(step * power for step in (1, 2, 5) if step * power <= limit_m)
+    text = (
+        words("kilometres", km=f"{metres / 1000:g}")
+        if metres >= 1000
+        else words("scale_metres", metres=f"{metres:g}")
+    )
+    return round(metres / unit_m, 1), text
+
+
+def _texts(view: DayView) -> list[tuple[str, str, str]]:
+    """Return number, text and state of each plate, bases first."""
+    texts = [("", base.name, "base") for base in _bases(view)]
+    for stop in view.stops:
+        text = f"{stop.arrive} · {stop.note}" if stop.note else stop.arrive
+        texts.append((str(stop.number), text, stop.state))
+    return texts
+
+
+def sketch_of(view: DayView, words: Words) -> Sketch:
+    """Return the sketch of a tour."""
+    points, unit_m = _to_paper(view)
+    bases = len(_bases(view))
+    legs = _legs(points, bases)
+    texts = _texts(view)
+    parted = [len(number) * _LETTER + 2 * _PAD if number else 0.0 for number, _, _ in texts]
+    late = [2 * _PAD if state == "late" else 0.0 for _, _, state in texts]
+    widths = np.array(
+        [
+            part + len(text) * _LETTER + 2 * _PAD + more
+            for (_, text, _), part, more in zip(texts, parted, late, strict=True)
+        ]
+    )
+    scene = Scene(width=WIDTH, height=HEIGHT, dots=points, cords=legs, blocked=_CORNERS)
+    boxes = place_boxes(points, widths, PLATE_HEIGHT, scene).round(1)
+    leaders = leader_ends(boxes, points).round(1)
+    plates = tuple(
+        Plate(
+            x=float(boxes[k, 0]),
+            y=float(boxes[k, 1]),
+            width=float(boxes[k, 2]),
+            leader=(
+                float(leaders[k, 0]),
+                float(leaders[k, 1]),
+                float(leaders[k, 2]),
+                float(leaders[k, 3]),
+            ),
+            number=number,
+            text=text,
+            state=state,
+            parted=parted[k],
+        )
+        for k, (number, text, state) in enumerate(texts)
+    )
+    lengths = np.hypot(legs[:, 2] - legs[:, 0], legs[:, 3] - legs[:, 1])
+    scale_width, scale_text = _scale(unit_m, words)
+    return Sketch(
+        plates=plates,
+        bases=tuple((float(x), float(y)) for x, y in points[:bases].round(1)),
+        legs=tuple(
+            (float(a), float(b), float(c), float(d), k == len(legs) - 1)
+            for k, (a, b, c, d) in enumerate(legs.round(1))
+        ),
+        barbs=tuple(
+            _barb(leg) for leg, length in zip(legs, lengths, strict=True) if length > _SHORT_LEG
+        ),
+        scale_width=scale_width,
+        scale_text=scale_text,
+    )

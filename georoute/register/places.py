@@ -49,7 +49,7 @@ _SAME_PLACE_DIGITS = 6
 """Decimals of a degree that are compared: 0.1 m."""
 
 _CLEARLY = 10.0
-"""The whole file counts as exchanged where that brings it so many times nearer to the bases."""
+"""Axes count as exchanged only where that brings a place so many times nearer to the rest."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -163,19 +163,24 @@ class _Judge:
         """Find places out of range, and places that fit the rest only with exchanged axes."""
         inside = self.good & self.within(self.lon, self.lat)
         other = self.good & self.within(self.other_lon, self.other_lat)
-        far = np.zeros(len(self.rows), dtype=np.bool_)
-        fits = np.zeros(len(self.rows), dtype=np.bool_)
+        swapped = np.zeros(len(self.rows), dtype=np.bool_)
         if int(inside.sum()) >= _FEWEST - 1:
             centre = _centre(self.lon[inside], self.lat[inside])
-            reach = _reach(_distances(centre, self.lon[inside], self.lat[inside]))
-            far[inside] = _distances(centre, self.lon[inside], self.lat[inside]) > reach
-            fits[other] = _distances(centre, self.other_lon[other], self.other_lat[other]) <= reach
+            own, exchanged = np.full((2, len(self.rows)), np.inf)
+            own[inside] = _distances(centre, self.lon[inside], self.lat[inside])
+            exchanged[other] = _distances(centre, self.other_lon[other], self.other_lat[other])
+            # On plain distances the rule bears nearly half of the rows exchanged; on logarithms
+            # it knows how far the ordinary remote sites of a scattered register lie.
+            for reach in (_plain_reach(own[inside]), _reach(own[inside])):
+                swapped |= (own > reach) & (exchanged <= reach)
+            # Near the line where latitude equals longitude an exchange hardly moves a site.
+            swapped &= self.good & (own > _CLEARLY * exchanged)
         for k in np.flatnonzero(self.good):
-            if fits[k] and (far[k] or not inside[k]):
+            if swapped[k]:
                 self._swapped(int(k))
             elif not inside[k]:
                 self._out_of_range(int(k))
-        self.good &= inside & ~(far & fits)
+        self.good &= inside & ~swapped
 
     def _swapped(self, k: int) -> None:
         self.add(
@@ -261,6 +266,13 @@ def _distances(centre: tuple[float, float], lon: _Floats, lat: _Floats) -> _Floa
     count = len(lon)
     _, _, metres = _GEOD.inv(np.full(count, centre[0]), np.full(count, centre[1]), lon, lat)
     return np.maximum(np.asarray(metres, dtype=np.float64), _NEAR_M)
+
+
+def _plain_reach(distances: _Floats) -> float:
+    """Return the distance beyond which a site is an outlier, judged on distances as they are."""
+    middle = float(np.median(distances))
+    spread = float(np.median(np.abs(distances - middle)))
+    return middle + _CUT * spread / _MAD_TO_SIGMA
 
 
 def _reach(distances: _Floats) -> float:

@@ -23,7 +23,9 @@ if TYPE_CHECKING:
 
 __all__ = ["check_exchanges"]
 
-KINDS = frozenset({"start", "order", "two_opt", "or_opt", "or_3opt", "kick", "relocate"})
+KINDS = frozenset(
+    {"start", "order", "two_opt", "or_opt", "or_3opt", "lin_kernighan", "kick", "relocate"}
+)
 
 Leg = tuple[str, str]
 

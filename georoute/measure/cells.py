@@ -22,7 +22,7 @@ if TYPE_CHECKING:
 
 __all__ = ["Batch", "Sheet", "cell_batches", "numbers", "open_sheet", "report_bad_cells"]
 
-_BATCH_ROWS = 100_000
+_BATCH_ROWS = 20_000
 _FIRST_ROW = 2
 """The row below the header, as a person counts."""
 
@@ -85,7 +85,7 @@ def cell_batches(sheet: Sheet, log: FindingLog) -> Iterator[Batch]:
             return
         rows = np.arange(first, first + len(lines), dtype=np.int32)
         first += len(lines)
-        if any(len(line) != width for line in lines):
+        if set(map(len, lines)) != {width}:
             keep = [k for k, line in enumerate(lines) if len(line) == width]
             for k, line in enumerate(lines):
                 if len(line) != width and any(line):
@@ -102,17 +102,18 @@ def numbers(texts: Sequence[str], *, decimal_comma: bool) -> NDArray[np.float64]
     """
     if decimal_comma:
         texts = [text.replace(",", ".") for text in texts]
-    filled = [text if text.strip() else "inf" for text in texts]
     # float() takes "1_000" for a thousand, which no table means.
-    if "_" not in "".join(filled):
+    if "_" not in "".join(texts):
         try:
-            return np.fromiter(map(float, filled), np.float64, len(filled))
+            return np.fromiter(map(float, texts), np.float64, len(texts))
         except ValueError:
             pass
-    return np.fromiter(map(_number, filled), np.float64, len(filled))
+    return np.fromiter(map(_number, texts), np.float64, len(texts))
 
 
 def _number(text: str) -> float:
+    if not text.strip():
+        return float("inf")
     try:
         return float("nan") if "_" in text else float(text)
     except ValueError:

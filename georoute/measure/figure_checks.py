@@ -149,10 +149,11 @@ def _check_largest(grid: Grid, layer: Layer, log: FindingLog) -> None:
 def _check_all_zero(grid: Grid, layer: Layer, log: FindingLog) -> None:
     """Report a layer without any travel, unless all places could be one and the same."""
     places = grid.places
-    one_point = np.ptp(places.lat_deg) == 0 and np.ptp(places.lon_deg) == 0
     known = (layer.rows > 0) & np.isfinite(layer.values)
     np.fill_diagonal(known, val=False)
-    if one_point or not known.any() or layer.values[known].any():
+    if not known.any() or layer.values[known].any():
+        return
+    if np.ptp(places.lat_deg) == 0 and np.ptp(places.lon_deg) == 0:
         return
     log.add(
         Finding(

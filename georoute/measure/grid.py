@@ -53,17 +53,19 @@ class Grid:
     metres: Layer
 
 
-class IdIndex:
-    """Look up places by the ids of a file; blanks around an id are forgiven."""
+class IdIndex(dict[str, int]):
+    """Places by the ids of a file, -1 for an unknown id; blanks around an id are forgiven.
+
+    A dictionary, so that the millions of look-ups of a long table need no Python each.
+    """
 
     def __init__(self, ids: tuple[str, ...]) -> None:
-        self._exact = {name: k for k, name in enumerate(ids)}
+        super().__init__((name, k) for k, name in enumerate(ids))
         self._bare = {name.strip(): k for k, name in enumerate(ids)}
 
-    def of(self, text: str) -> int:
-        """Return the index of the place, -1 where there is none of that id."""
-        found = self._exact.get(text)
-        return self._bare.get(text.strip(), -1) if found is None else found
+    def __missing__(self, text: str) -> int:
+        """Look the id up without the blanks around it."""
+        return self._bare.get(text.strip(), -1)
 
 
 def cell_finding(  # noqa: PLR0913 - a finding is told in full

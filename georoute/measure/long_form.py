@@ -104,7 +104,7 @@ class _LongReader:
     def _look_up(
         self, texts: Sequence[str], column: str, rows: NDArray[np.int32]
     ) -> NDArray[np.int64]:
-        found = np.fromiter(map(self._index.of, texts), np.int64, len(texts))
+        found = np.fromiter(map(self._index.__getitem__, texts), np.int64, len(texts))
         for k in np.flatnonzero(found < 0).tolist():
             name = texts[k]
             self._unknown[name] += 1

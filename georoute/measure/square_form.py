@@ -57,7 +57,7 @@ def _columns(sheet: Sheet, index: IdIndex, log: FindingLog) -> tuple[list[int], 
     picked: list[int] = []
     columns: list[int] = []
     for k, name in enumerate(sheet.header[1:], start=1):
-        j = index.of(name)
+        j = index[name]
         if j < 0:
             log.add(unknown_id(name, 1, file=sheet.name, row=1, column=name or f"column {k + 1}"))
         elif j in columns:
@@ -78,7 +78,7 @@ def _row_place(
 ) -> int:
     """Return the place a row belongs to, -1 where the row is not to be taken."""
     first_column = sheet.header[0] or "column 1"
-    i = index.of(cells[0])
+    i = index[cells[0]]
     if i < 0:
         log.add(unknown_id(cells[0], 1, file=sheet.name, row=row, column=first_column))
         return -1

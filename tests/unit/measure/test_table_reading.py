@@ -7,6 +7,7 @@ from pathlib import Path
 import numpy as np
 import pytest
 
+from georoute.domain.costs import Places
 from georoute.domain.findings import Severity
 from georoute.errors import TableError
 from georoute.measure import check_table, read_table
@@ -188,3 +189,11 @@ def test_one_place_needs_no_rows_but_its_own(tmp_path: Path) -> None:
     costs, findings = read_table(write_rows(tmp_path / "t.csv", rows), place)
     assert costs.travel_s.tolist() == [[0.0]]
     assert findings == ()
+
+
+def test_places_at_one_point_may_be_no_travel_apart(tmp_path: Path) -> None:
+    place = Places(ids=("P-0", "P-1"), lat_deg=np.full(2, -30.0), lon_deg=np.full(2, -71.0))
+    zero = np.zeros((2, 2))
+    path = write_rows(tmp_path / "t.csv", long_rows(place, zero, zero, 1))
+    costs, _ = read_table(path, place)
+    assert not costs.travel_s.any()

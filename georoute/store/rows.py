@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import MISSING, Field, dataclass, fields, is_dataclass
+from dataclasses import MISSING, dataclass, fields, is_dataclass
 from functools import cache
 from types import NoneType
 from typing import TYPE_CHECKING, Any, get_args, get_type_hints
@@ -12,6 +12,7 @@ from georoute.store.cells import Codec, codec_for
 from georoute.store.schema import TABLES
 
 if TYPE_CHECKING:
+    from collections.abc import Iterator
     from zoneinfo import ZoneInfo
 
     from georoute.store.schema import Table
@@ -32,12 +33,22 @@ class Column:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class _Source:
-    """A row and how its columns are found."""
+class _Slot:
+    """A field of a class: the column that holds it, or the class whose fields become columns."""
 
-    row: Row
-    columns: Mapping[Path, Column]
-    zone: ZoneInfo
+    name: str
+    has_default: bool
+    optional: bool
+    column: Column | None = None
+    kind: type | None = None
+    inner: tuple[_Slot, ...] = ()
+
+    def columns(self) -> Iterator[Column]:
+        """Yield the columns that hold the field."""
+        if self.column is not None:
+            yield self.column
+        for slot in self.inner:
+            yield from slot.columns()
 
 
 def _nested(hint: object) -> type | None:
@@ -51,34 +62,40 @@ def _nested(hint: object) -> type | None:
     return None
 
 
-def _walk(kind: type, prefix: Path, omit: frozenset[str]) -> list[Column]:
+def _slots_of(kind: type, prefix: Path, table: Table, omit: frozenset[str]) -> tuple[_Slot, ...]:
     hints = get_type_hints(kind)
-    found = []
+    slots = []
     for item in fields(kind):
         if item.name in omit:
             continue
-        path = (*prefix, item.name)
-        inner = _nested(hints[item.name])
-        if inner is None:
-            codec = codec_for(hints[item.name])
-            found.append(Column(name="_".join(path), path=path, codec=codec))
-        else:
-            found.extend(_walk(inner, path, frozenset()))
-    return found
+        path, hint = (*prefix, item.name), hints[item.name]
+        inner = _nested(hint)
+        name = "_".join(path)
+        slots.append(
+            _Slot(
+                name=item.name,
+                has_default=item.default is not MISSING or item.default_factory is not MISSING,
+                optional=NoneType in get_args(hint),
+                kind=inner,
+                inner=() if inner is None else _slots_of(inner, path, table, frozenset()),
+                column=Column(name=table.rename.get(name, name), path=path, codec=codec_for(hint))
+                if inner is None
+                else None,
+            )
+        )
+    return tuple(slots)
 
 
 @cache
-def _columns(name: str) -> tuple[Column, ...]:
+def _slots(name: str) -> tuple[_Slot, ...]:
+    """Return the fields of a table's class; worked out once, rows come in thousands."""
     table = TABLES[name]
-    return tuple(
-        Column(name=table.rename.get(c.name, c.name), path=c.path, codec=c.codec)
-        for c in _walk(table.kind, (), table.omit)
-    )
+    return _slots_of(table.kind, (), table, table.omit)
 
 
 def columns_of(table: Table) -> tuple[Column, ...]:
     """Return the columns that hold the fields of the table's class, in the order of the fields."""
-    return _columns(table.name)
+    return tuple(column for slot in _slots(table.name) for column in slot.columns())
 
 
 def _reach(value: object, path: Path) -> object:
@@ -89,41 +106,24 @@ def _reach(value: object, path: Path) -> object:
     return value
 
 
-def flatten(table: Table, value: object) -> dict[str, object]:
-    """Return the fields of ``value`` by column name, not yet written as cells."""
-    return {column.name: _reach(value, column.path) for column in columns_of(table)}
+def flatten(columns: tuple[Column, ...], value: object) -> tuple[object, ...]:
+    """Return the fields of ``value`` in the order of ``columns``, not yet written as cells."""
+    return tuple(_reach(value, column.path) for column in columns)
 
 
-def _has_default(item: Field[Any]) -> bool:
-    return item.default is not MISSING or item.default_factory is not MISSING
-
-
-def _is_absent(source: _Source, path: Path) -> bool:
-    """Tell whether all columns of an optional object are empty."""
-    names = [c.name for p, c in source.columns.items() if p[: len(path)] == path]
-    return all(source.row.get(name) is None for name in names)
-
-
-def _build(kind: type, prefix: Path, source: _Source, given: Mapping[str, object]) -> object:
-    hints = get_type_hints(kind)
+def _build(kind: type, slots: tuple[_Slot, ...], row: Row, zone: ZoneInfo, given: Row) -> object:
     values = dict(given)
-    for item in fields(kind):
-        path = (*prefix, item.name)
-        column = source.columns.get(path)
-        if item.name in given:
-            continue
+    for slot in slots:
+        column = slot.column
         if column is not None:
-            if column.name in source.row:
-                values[item.name] = column.codec.of_cell(source.row[column.name], source.zone)
-            elif not _has_default(item):
+            if column.name in row:
+                values[slot.name] = column.codec.of_cell(row[column.name], zone)
+            elif not slot.has_default:
                 raise KeyError(column.name)
-            continue
-        inner = _nested(hints[item.name])
-        if inner is None:
-            continue
-        optional = NoneType in get_args(hints[item.name])
-        absent = optional and _is_absent(source, path)
-        values[item.name] = None if absent else _build(inner, path, source, {})
+        elif slot.optional and all(row.get(c.name) is None for c in slot.columns()):
+            values[slot.name] = None
+        elif slot.kind is not None:
+            values[slot.name] = _build(slot.kind, slot.inner, row, zone, {})
     return kind(**values)
 
 
@@ -139,5 +139,4 @@ def build(table: Table, row: Row, zone: ZoneInfo, **given: object) -> Any:  # no
     ValueError
         The text of a cell cannot be read.
     """
-    columns = {column.path: column for column in columns_of(table)}
-    return _build(table.kind, (), _Source(row=row, columns=columns, zone=zone), given)
+    return _build(table.kind, _slots(table.name), row, zone, given)

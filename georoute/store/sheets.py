@@ -72,9 +72,10 @@ def _sheet(
     """Put together keys, fields and added columns of one table."""
     table = TABLES[name]
     key_columns = tuple((column, codec_for(hint)) for column, hint in table.keys.items())
-    fields = tuple((column.name, column.codec) for column in columns_of(table))
+    held = columns_of(table)
+    fields = tuple((column.name, column.codec) for column in held)
     added_columns = tuple((column, codec_for(hint)) for column, hint in table.added.items())
-    rows = [tuple(flatten(table, value).values()) for value in values]
+    rows = [flatten(held, value) for value in values]
     if keys:
         rows = [(*key, *row) for key, row in zip(keys, rows, strict=True)]
     if added:

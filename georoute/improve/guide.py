@@ -1,0 +1,121 @@
+"""What a slack-induction search needs to know beforehand, made from the problem's arrays."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from georoute.kernels.annealing import Guide
+from georoute.kernels.arrays import MUST, UNREACHABLE
+from georoute.kernels.slack_state import Legs
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from georoute.problem import Problem
+
+__all__ = ["guide_of", "legs_of", "ranked_worth", "widest_tour"]
+
+NO_LEG = 1 << 52
+"""Money of a leg that does not exist: dearer than any tour, and safe to add up."""
+NEAREST = 500
+RULE_WEIGHTS = {"random": 4.0, "demand": 4.0, "far": 2.0, "close": 1.0}
+WINDOW_WEIGHTS = {"window_length": 2.0, "opens": 2.0, "closes": 2.0}
+"""Orders of insertion and how often they are drawn: the weights of the paper."""
+
+
+def legs_of(problem: Problem) -> Legs:
+    """Return the money of every leg for each class of rates."""
+    shifts, travel = problem.shifts, problem.travel
+    rates = np.stack([shifts.hour_rate, shifts.length_rate], axis=1)
+    classes, rate_class = np.unique(rates, axis=0, return_inverse=True)
+    gone = travel.time_ms >= UNREACHABLE
+    tables = []
+    for hour_rate, length_rate in classes:
+        money = np.rint(hour_rate * travel.time_ms + length_rate * travel.length_mm)
+        tables.append(np.where(gone, NO_LEG, np.minimum(money, NO_LEG)).astype(np.int64))
+    return Legs(
+        out=np.stack(tables),
+        rate_class=rate_class.reshape(-1).astype(np.int64),
+        ms=travel.time_ms,
+        mm=travel.length_mm,
+    )
+
+
+def ranked_worth(problem: Problem) -> NDArray[np.int64]:
+    """Return a worth of each visit whose sums never overflow and respect the ranks.
+
+    The visits of the last rank keep their worth in money (at most a share of what int64 holds);
+    one visit of a higher rank outweighs all visits of the ranks below it.
+    """
+    count = problem.visit_count
+    cap = (1 << 61) // max(1, count)
+    worth = np.minimum(problem.visits.worth, cap)
+    above = 0
+    for level in np.unique(problem.visits.level)[::-1]:
+        of_level = (problem.visits.level == level) | (problem.visits.worth >= MUST)
+        if above:
+            worth[of_level] = np.minimum(np.maximum(worth[of_level], above), cap)
+        above = min(cap, int(worth[problem.visits.level == level].sum()) + 1 + above)
+    return worth
+
+
+def widest_tour(problem: Problem) -> int:
+    """Return how many stops a tour that fits can have at the most."""
+    count = problem.visit_count
+    longest = int(problem.shifts.limit_ms.max(initial=0))
+    by_work = np.searchsorted(np.cumsum(np.sort(problem.visits.work_ms)), longest, side="right")
+    most_load = int(problem.shifts.load_limit.max(initial=0))
+    by_load = np.searchsorted(np.cumsum(np.sort(problem.visits.load)), most_load, side="right")
+    return int(min(count, by_work, by_load))
+
+
+def _near(problem: Problem, legs: Legs) -> NDArray[np.int32]:
+    place = problem.visits.place
+    kept = min(place.shape[0], NEAREST)
+    near = np.empty((place.shape[0], kept), np.int32)
+    for v, p in enumerate(place):
+        both_ways = legs.out[0, p, place] + legs.out[0, place, p]
+        both_ways[v] = -1
+        near[v] = np.argsort(both_ways, kind="stable")[:kept]
+    return near
+
+
+def _kinds(problem: Problem) -> NDArray[np.int64]:
+    """Number the shifts so that empty ones of the same number are worth the same to any visit."""
+    shifts, visits = problem.shifts, problem.visits
+    columns = [array.astype(np.float64) for array in shifts[:-2]]
+    if visits.window_open_ms.shape[0] == 0:
+        # Without windows only the room between open and close matters, not when it is.
+        columns[2] = (shifts.close_ms - shifts.open_ms).astype(np.float64)
+        columns[3] = np.zeros_like(columns[2])
+    table = np.column_stack([*columns, visits.eligible.T.astype(np.float64)])
+    _, kinds = np.unique(table, axis=0, return_inverse=True)
+    return kinds.reshape(-1).astype(np.int64)
+
+
+def _keys(problem: Problem, legs: Legs) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+    visits = problem.visits
+    starts = np.unique(problem.shifts.start_place)
+    far = legs.out[0][np.ix_(starts, visits.place)].min(axis=0).astype(np.float64)
+    loaded = bool(visits.load.any()) and not bool(visits.work_ms.any())
+    demand = (visits.load if loaded else visits.work_ms).astype(np.float64)
+    rows = [np.zeros_like(far), -demand, -far, far]
+    weights = list(RULE_WEIGHTS.values())
+    first, last = visits.window_ptr[:-1], visits.window_ptr[1:]
+    has = first < last
+    if has.any():
+        opens = np.where(has, np.append(visits.window_open_ms, 0)[first], -np.inf)
+        closes = np.where(has, np.append(visits.window_close_ms, 0)[last - 1], np.inf)
+        rows += [closes - opens, opens, -closes]
+        weights += list(WINDOW_WEIGHTS.values())
+    return np.array(rows), np.cumsum(np.array(weights))
+
+
+def guide_of(problem: Problem, legs: Legs) -> Guide:
+    """Return neighbours, orders of insertion, and kinds of shifts."""
+    keys, key_weights = _keys(problem, legs)
+    return Guide(
+        near=_near(problem, legs), keys=keys, key_weights=key_weights, kinds=_kinds(problem)
+    )

@@ -1,0 +1,191 @@
+"""Days together by slack induction: strings of stops out, greedy insertion back, annealed."""
+
+from __future__ import annotations
+
+import time
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from georoute.improve.guide import guide_of, legs_of, ranked_worth, widest_tour
+from georoute.kernels.annealing import Book, anneal
+from georoute.kernels.random_stream import new_stream
+from georoute.kernels.slack_state import rows_of, write_row
+from georoute.problem import Problem, Solution
+from georoute.timetable import solution_cost
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from georoute.domain.run import Effort, Progress, ShouldStop
+
+__all__ = ["ImproveResult", "improve"]
+
+MICRO = 1_000_000
+HOT = 1.0
+COLD = 0.01
+"""Temperatures at the start and at the end, as multiples of the mean leg."""
+CHUNK_S = 0.04
+"""Seconds between two looks at the caller's wishes."""
+FIRST_CHUNK = 50
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class ImproveResult:
+    """The best solution found, and how many steps were done."""
+
+    solution: Solution
+    steps: int
+
+
+class _Schedule:
+    """How far the search is, 0 to 1: by steps, or by time where seconds are given."""
+
+    def __init__(self, steps: int, seconds: float | None) -> None:
+        self.steps = steps
+        self.seconds = seconds
+        self.done = 0
+        self.chunk = FIRST_CHUNK
+        self._begin = time.thread_time()
+
+    @property
+    def share(self) -> float:
+        if self.seconds is None:
+            return min(1.0, self.done / self.steps) if self.steps else 1.0
+        if self.seconds <= 0:
+            return 1.0
+        return min(1.0, (time.thread_time() - self._begin) / self.seconds)
+
+    def next_chunk(self) -> int:
+        """Return how many steps to do next; a budget of steps has chunks of one size.
+
+        The temperature is set per chunk, so chunks that depended on the clock would make the
+        result depend on it too.
+        """
+        if self.seconds is None:
+            return min(FIRST_CHUNK, self.steps - self.done)
+        return self.chunk
+
+    def took(self, steps: int, seconds: float) -> None:
+        self.done += steps
+        if seconds > 0:
+            self.chunk = int(np.clip(steps * CHUNK_S / seconds, 1, 100_000))
+
+
+class _Search:
+    """Arrays of one search, and their way back to a solution."""
+
+    def __init__(self, problem: Problem, solution: Solution, seed: int) -> None:
+        visits, shifts = problem.visits, problem.shifts
+        count, number = problem.shift_count, problem.visit_count
+        self.travel = problem.travel
+        self.shifts = shifts
+        self.visits = visits._replace(worth=ranked_worth(problem))
+        self.legs = legs_of(problem)
+        width = max(widest_tour(problem), *(order.shape[0] for order in solution.orders))
+        self.rows = rows_of(count, number, width)
+        self.backup = rows_of(count, 0, width)
+        self.guide = guide_of(problem, self.legs)
+        self.stream = new_stream(seed, 0)
+        for s, order in enumerate(solution.orders):
+            write_row(self.travel, self.visits, shifts, self.legs, self.rows, s, order)
+        absent = solution.unplaced(number)
+        self.book = Book(
+            best_stop=self.rows.stop.copy(),
+            best_count=self.rows.count.copy(),
+            changed=np.zeros(count, np.int64),
+            absent=np.concatenate([absent, np.zeros(number - absent.shape[0], np.int64)]),
+            absent_before=np.zeros(number, np.int64),
+            absences=np.zeros(number, np.int64),
+            sums=np.array(
+                [
+                    self.rows.money.sum(),
+                    self.visits.worth[absent].sum(),
+                    absent.shape[0],
+                    self.rows.money.sum(),
+                    self.visits.worth[absent].sum(),
+                    0,
+                ],
+                np.int64,
+            ),
+            touch=np.zeros(count + 1, np.int64),
+            blink=np.full(1, 100, np.int64),
+        )
+
+    @property
+    def mean_leg(self) -> float:
+        legs = float((self.rows.count + (self.rows.count > 0)).sum())
+        return float(self.rows.travel.sum()) / legs if legs else 1.0
+
+    def step(self, steps: int, warmth: float) -> None:
+        anneal(
+            self.travel,
+            self.visits,
+            self.shifts,
+            self.legs,
+            self.rows,
+            self.backup,
+            self.guide,
+            self.book,
+            steps,
+            warmth,
+            self.stream,
+        )
+
+    def best(self) -> Solution:
+        return Solution(
+            orders=tuple(
+                self.book.best_stop[s, 1 : count + 1].copy()
+                for s, count in enumerate(self.book.best_count)
+            )
+        )
+
+
+def _value(problem: Problem, solution: Solution, worth: NDArray[np.int64]) -> int:
+    lost = int(worth[solution.unplaced(problem.visit_count)].sum())
+    return solution_cost(problem, solution) + lost
+
+
+def improve(
+    problem: Problem,
+    solution: Solution,
+    *,
+    effort: Effort,
+    seed: int,
+    progress: Progress,
+    should_stop: ShouldStop,
+    seconds: float | None = None,
+) -> ImproveResult:
+    """Improve all days together, from any feasible solution, never to a worse one.
+
+    Money decides: tours by the tariff plus the worth of what is left out, visits of higher rank
+    first. Without ``seconds`` the search does ``effort.improve_steps`` steps per visit and is
+    the same on every run; with it, it cools over that much processor time. ``should_stop`` ends
+    it at once with the best found so far.
+
+    J. Christiaens, G. Vanden Berghe, "Slack induction by string removals for vehicle routing
+    problems", Transportation Science 54 (2020) 417-433.
+    """
+    if problem.visit_count == 0 or problem.shift_count == 0:
+        return ImproveResult(solution=solution, steps=0)
+    search = _Search(problem, solution, seed)
+    schedule = _Schedule(effort.improve_steps * problem.visit_count, seconds)
+    search.step(1, 0.0)
+    hot = HOT * search.mean_leg
+    while (share := schedule.share) < 1.0 and not should_stop():
+        progress(
+            "days",
+            fraction=share,
+            cost=int(search.book.sums[0]) / MICRO,
+            best_cost=int(search.book.sums[3]) / MICRO,
+        )
+        steps = schedule.next_chunk()
+        begin = time.perf_counter()
+        search.step(steps, hot * (COLD / HOT) ** share)
+        schedule.took(steps, time.perf_counter() - begin)
+    found = search.best()
+    worth = search.visits.worth
+    if _value(problem, found, worth) < _value(problem, solution, worth):
+        solution = found
+    return ImproveResult(solution=solution, steps=schedule.done)

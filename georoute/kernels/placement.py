@@ -1,0 +1,308 @@
+"""Tours that fit: take out what is too much, and find places for what is left out."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from georoute.kernels._jit import Float, Int, kernel
+from georoute.kernels.arrays import UNREACHABLE
+from georoute.kernels.board import (
+    CLOSE,
+    COUNT,
+    END,
+    FIRST,
+    FOREVER,
+    INFEASIBLE,
+    LAST,
+    LEAVE,
+    LIMIT,
+    LOAD,
+    LOADED,
+    MOST_LOAD,
+    OPEN,
+    PLACE,
+    RANK,
+    SLACK,
+    START,
+    WAITED,
+    WHERE,
+    WORK,
+    WRITE_UP,
+    Board,
+    leg,
+)
+from georoute.kernels.day_step import (
+    Step,
+    begin_step,
+    best_anywhere,
+    is_better,
+    step_in,
+    step_out,
+    undo_step,
+)
+from georoute.kernels.insertion import best_place
+
+__all__ = ["excess_visit", "fill_rises", "next_pick", "push_out", "trade_place"]
+
+EXACT_STOPS = 200
+"""Up to so many stops, each removal is judged by the clock; beyond, by the time it frees."""
+
+
+@kernel
+def _way(board: Board, i: Int, j: Int) -> Int:
+    return leg(board.time, board.x, board.y, board.plane, 0, i, j)
+
+
+@kernel
+def _start(board: Board, v: Int, arrive: Int) -> tuple[Int, Int, Int]:
+    """Return start of work, room to the window's close, and lateness of visit ``v``."""
+    first = board.visit[v, FIRST]
+    last = board.visit[v, LAST]
+    if first == last:
+        return arrive, np.int64(FOREVER), np.int64(0)
+    for w in range(first, last):
+        if arrive <= board.closes[w]:
+            start = max(arrive, board.opens[w])
+            return start, board.closes[w] - start, np.int64(0)
+    return arrive, np.int64(0), arrive - board.closes[last - 1]
+
+
+@kernel
+def _breach_without(board: Board, s: Int, p: Int) -> Float:
+    """Return by how much tour ``s`` breaks its limits without stop ``p``: ms, load scaled."""
+    n = board.tour[s, COUNT]
+    now = board.ahead[s, p, LEAVE]
+    wait = board.ahead[s, p, WAITED]
+    slack = board.ahead[s, p, SLACK]
+    load = board.tour[s, LOADED] - board.visit[board.stops[s, p], LOAD]
+    late = np.int64(0)
+    here = board.shift[s, START]
+    for k in range(p):
+        u = board.stops[s, k]
+        start = board.ahead[s, k + 1, LEAVE] - board.visit[u, WORK]
+        late += max(np.int64(0), start - _closing(board, u))
+        here = board.visit[u, PLACE]
+    drive = np.int64(0)
+    for k in range(p + 1, n):
+        u = board.stops[s, k]
+        way = _way(board, here, board.visit[u, PLACE])
+        drive = max(drive, way)
+        start, room, lateness = _start(board, u, now + way)
+        wait += start - now - way
+        late += lateness
+        slack = min(slack, wait + room)
+        now = start + board.visit[u, WORK]
+        here = board.visit[u, PLACE]
+    way = _way(board, here, board.shift[s, END])
+    drive = max(drive, way)
+    finish = now + way + board.shift[s, WRITE_UP]
+    depart = board.shift[s, OPEN]
+    if late == 0:
+        depart += max(np.int64(0), min(slack, wait))
+    excess = max(finish - board.shift[s, CLOSE], finish - depart - board.shift[s, LIMIT])
+    breach = float(late) + float(max(np.int64(0), excess))
+    if drive >= UNREACHABLE:
+        breach += float(UNREACHABLE)
+    over = max(np.int64(0), load - board.shift[s, MOST_LOAD])
+    time_per_load = float(board.shift[s, LIMIT]) / max(1.0, float(board.shift[s, MOST_LOAD]))
+    return breach + float(over) * time_per_load
+
+
+@kernel
+def _closing(board: Board, v: Int) -> Int:
+    """Return when work at ``v`` may start at the latest."""
+    last = board.visit[v, LAST]
+    if board.visit[v, FIRST] == last:
+        return np.int64(FOREVER)
+    return board.closes[last - 1]
+
+
+@kernel
+def _time_freed(board: Board, s: Int, p: Int) -> Float:
+    """Return the work and detour that stop ``p`` adds to tour ``s``, in ms."""
+    v = board.stops[s, p]
+    n = board.tour[s, COUNT]
+    before = board.shift[s, START] if p == 0 else board.visit[board.stops[s, p - 1], PLACE]
+    after = board.shift[s, END] if p == n - 1 else board.visit[board.stops[s, p + 1], PLACE]
+    here = board.visit[v, PLACE]
+    detour = _way(board, before, here) + _way(board, here, after) - _way(board, before, after)
+    return float(board.visit[v, WORK] + detour)
+
+
+@kernel
+def excess_visit(board: Board, s: Int) -> Int:
+    """Return the visit to take out of tour ``s``, which breaks a limit.
+
+    A visit that may not be there at all goes first. Else the one after which the breach is
+    least; where several mend it, the one with the least loss, then the one freeing most time.
+    """
+    n = board.tour[s, COUNT]
+    best = board.stops[s, 0]
+    best_breach = np.inf
+    best_freed = -np.inf
+    exact = n <= EXACT_STOPS
+    for p in range(n):
+        v = board.stops[s, p]
+        if not board.eligible[v, s]:
+            return v
+        freed = _time_freed(board, s, p)
+        start = board.ahead[s, p + 1, LEAVE] - board.visit[v, WORK]
+        if exact:
+            breach = _breach_without(board, s, p)
+        elif start > _closing(board, v):
+            breach = -np.inf  # too late itself: no way round it
+        else:
+            breach = -freed
+        better = breach < best_breach
+        if breach == best_breach:
+            order = board.visit[v, RANK] - board.visit[best, RANK]
+            better = order > 0 or (order == 0 and freed > best_freed)
+        if better:
+            best = v
+            best_breach = breach
+            best_freed = freed
+    return best
+
+
+@kernel
+def fill_rises(
+    board: Board,
+    bank: NDArray[np.int64],
+    rows: NDArray[np.int64],
+    columns: NDArray[np.int64],
+    rises: NDArray[np.int64],
+) -> None:
+    """Fill ``rises[i, s]`` with the least rise of money by visit ``bank[i]`` in shift ``s``.
+
+    For all ``i`` of ``rows`` that are not placed, and all ``s`` of ``columns``; ``INFEASIBLE``
+    where it has no place.
+    """
+    for i in rows:
+        v = bank[i]
+        if board.spot[v, WHERE] < 0:
+            for s in columns:
+                rise, _ = best_place(board, s, v, np.int64(INFEASIBLE))
+                rises[i, s] = rise
+
+
+@kernel
+def next_pick(board: Board, bank: NDArray[np.int64], rises: NDArray[np.int64]) -> tuple[Int, Int]:
+    """Return which visit to put in next, and its shift; -1, -1 where none has a place.
+
+    Those to be left out last come first; among equals the one that would lose most by not
+    getting its best shift (regret: Potvin and Rousseau, European Journal of Operational
+    Research 66 (1993) 331-340).
+    """
+    pick = np.int64(-1)
+    shift = np.int64(-1)
+    most = np.int64(-1)
+    for i in range(bank.shape[0]):
+        v = bank[i]
+        if board.spot[v, WHERE] >= 0:
+            continue
+        if pick >= 0 and board.visit[v, RANK] > board.visit[bank[pick], RANK]:
+            continue
+        best = np.int64(INFEASIBLE)
+        second = np.int64(INFEASIBLE)
+        best_shift = np.int64(-1)
+        for s in range(rises.shape[1]):
+            if rises[i, s] < best:
+                second = best
+                best = rises[i, s]
+                best_shift = np.int64(s)
+            elif rises[i, s] < second:
+                second = rises[i, s]
+        if best_shift < 0:
+            continue
+        regret = second - best
+        if pick < 0 or board.visit[v, RANK] < board.visit[bank[pick], RANK] or regret > most:
+            pick = np.int64(i)
+            shift = best_shift
+            most = regret
+    return pick, shift
+
+
+@kernel
+def trade_place(
+    board: Board,
+    step: Step,
+    v: Int,
+    s: Int,
+    begin: Int,
+    end: Int,
+) -> bool:
+    """Make room in shift ``s`` for ``v``, left out until now, by moving one visit elsewhere.
+
+    Tries the stops ``begin .. end - 1`` of the tour one by one; returns whether that worked.
+    """
+    if not board.eligible[v, s]:
+        return False
+    for k in range(begin, min(end, board.tour[s, COUNT])):
+        u = board.stops[s, k]
+        begin_step(step)
+        step_out(board, step, u)
+        rise, p = best_place(board, s, v, np.int64(INFEASIBLE))
+        if p >= 0:
+            step_in(board, step, s, p, v)
+            rise, t, q = best_anywhere(board, step, u, np.int64(-1), np.int64(INFEASIBLE))
+            if t >= 0 and rise < INFEASIBLE:
+                step_in(board, step, t, q, u)
+                if is_better(board, step):
+                    return True
+        undo_step(board, step)
+    begin_step(step)
+    return False
+
+
+@kernel
+def _least_loss(board: Board, s: Int, v: Int) -> Int:
+    """Return the visit of shift ``s`` that is left out first, if it is before ``v``; else -1."""
+    pick = np.int64(-1)
+    for k in range(board.tour[s, COUNT]):
+        u = board.stops[s, k]
+        if board.visit[u, RANK] > board.visit[v, RANK] and (
+            pick < 0 or board.visit[u, RANK] > board.visit[pick, RANK]
+        ):
+            pick = u
+    return pick
+
+
+@kernel
+def push_out(
+    board: Board,
+    step: Step,
+    v: Int,
+    s: Int,
+    spare: NDArray[np.int64],
+) -> bool:
+    """Put ``v`` into shift ``s`` at the price of visits that are left out before it.
+
+    They are taken out one by one, the least loss first, until ``v`` fits; then each is put back
+    wherever it has a place, the gravest loss first. The step is kept open where less is left
+    out in the end; else it is taken back. ``spare`` (int64, (V,)) is scratch.
+    """
+    begin_step(step)
+    if not board.eligible[v, s]:
+        return False
+    gone = 0
+    rise, p = best_place(board, s, v, np.int64(INFEASIBLE))
+    while p < 0:
+        u = _least_loss(board, s, v)
+        if u < 0:
+            break
+        step_out(board, step, u)
+        spare[gone] = u
+        gone += 1
+        rise, p = best_place(board, s, v, np.int64(INFEASIBLE))
+    if p >= 0:
+        step_in(board, step, s, p, v)
+        for i in range(gone - 1, -1, -1):
+            u = spare[i]
+            rise, t, q = best_anywhere(board, step, u, np.int64(-1), np.int64(INFEASIBLE))
+            if t >= 0 and rise < INFEASIBLE:
+                step_in(board, step, t, q, u)
+        if is_better(board, step):
+            return True
+    undo_step(board, step)
+    return False

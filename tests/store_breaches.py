@@ -266,6 +266,11 @@ BREACHES: tuple[tuple[str, str, Breach], ...] = (
         lambda p: replace(p, capacity=replace(p.capacity, work_h=p.capacity.work_h - 0.5)),
     ),
     (
+        "capacity below nothing",
+        "capacity",
+        lambda p: replace(p, capacity=replace(p.capacity, shift_h=-1.0)),
+    ),
+    (
         "estimate called measured",
         "travel_note",
         lambda p: replace(p, travel=replace(p.travel, estimated=False)),

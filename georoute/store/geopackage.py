@@ -21,7 +21,7 @@ if TYPE_CHECKING:
     from georoute.store.lines import Point
     from georoute.store.sheets import Shape, Sheet
 
-__all__ = ["APPLICATION_ID", "Tables", "read_tables", "write_sheets"]
+__all__ = ["APPLICATION_ID", "Tables", "logs_beside", "read_tables", "write_sheets"]
 
 Tables = dict[str, list[dict[str, object]]]
 """Rows by column name, by table."""
@@ -171,21 +171,27 @@ def write_sheets(path: Path, sheets: tuple[Sheet, ...]) -> None:
         connection.execute("COMMIT")
 
 
+def logs_beside(path: Path) -> tuple[Path, ...]:
+    """Return the logs of SQLite beside a file: another program has it open, or died with it.
+
+    An empty log holds nothing and counts as none.
+    """
+    real = path.resolve()
+    logs = (real.with_name(real.name + suffix) for suffix in ("-wal", "-journal"))
+    return tuple(log for log in logs if log.exists() and log.stat().st_size > 0)
+
+
 @contextlib.contextmanager
 def _reading(path: Path) -> Iterator[sqlite3.Connection]:
-    """Open a file for reading only, also where its folder may not be written to."""
-    place = quote(str(path.absolute()))
-    connection = sqlite3.connect(f"file:{place}?mode=ro", uri=True)
-    try:
-        connection.execute("SELECT count(*) FROM sqlite_master")
-    except sqlite3.OperationalError:
-        connection.close()
-        # A program that keeps a log beside the file (WAL) makes plain reading need that folder.
-        connection = sqlite3.connect(f"file:{place}?mode=ro&immutable=1", uri=True)
-    try:
+    """Open a file for reading only, and leave nothing beside it.
+
+    Without a log the file is whole in itself and is read as one that does not change: plain
+    reading of a file that a GIS once opened with a write-ahead log would leave a log behind.
+    """
+    whole = "" if logs_beside(path) else "&immutable=1"
+    uri = f"file:{quote(str(path.absolute()))}?mode=ro{whole}"
+    with contextlib.closing(sqlite3.connect(uri, uri=True)) as connection:
         yield connection
-    finally:
-        connection.close()
 
 
 def _rows(connection: sqlite3.Connection, name: str) -> list[dict[str, object]]:

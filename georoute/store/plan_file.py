@@ -13,7 +13,7 @@ from georoute.domain.plan import Capacity, Plan, Provenance, TravelNote
 from georoute.domain.programme import Programme
 from georoute.errors import OutputError, PlanFileError
 from georoute.files import atomic_path
-from georoute.store.geopackage import read_tables, write_sheets
+from georoute.store.geopackage import logs_beside, read_tables, write_sheets
 from georoute.store.migrations import migrated
 from georoute.store.rows import build
 from georoute.store.schema import EXTRA_COLUMNS, PLAN, TABLES
@@ -28,8 +28,6 @@ if TYPE_CHECKING:
     from georoute.store.geopackage import Tables
 
 __all__ = ["read_plan", "write_plan"]
-
-OPEN_ELSEWHERE = ("-wal", "-journal")
 
 
 def _texts(tables: Tables) -> dict[str, str]:
@@ -121,14 +119,12 @@ def read_plan(path: Path | str) -> Plan:
 
 def _refuse_open_elsewhere(path: Path) -> None:
     """Refuse to write under a log of another program, which would be played into the new file."""
-    for suffix in OPEN_ELSEWHERE:
-        log = path.with_name(path.name + suffix)
-        if log.exists():
-            msg = (
-                f"{path}: is open in another program ({log.name} lies beside it); close it there; "
-                f"if no program has it open, remove {log.name} and try again"
-            )
-            raise OutputError(msg)
+    for log in logs_beside(path):
+        msg = (
+            f"{path}: is open in another program ({log.name} lies beside it); close it there; "
+            f"if no program has it open, remove {log.name} and try again"
+        )
+        raise OutputError(msg)
 
 
 def _verify(plan: Plan, temporary: Path, target: Path) -> None:

@@ -50,6 +50,12 @@ def square_form(folder: Path, ids: list[str], measure: Measure) -> Path:
     return folder / "own_dist_m.csv"
 
 
+def square_form_by_seconds(folder: Path, ids: list[str], measure: Measure) -> Path:
+    """The same two files, named by the other one."""
+    square_form(folder, ids, measure)
+    return folder / "own_drive_s.csv"
+
+
 def folder_form(folder: Path, ids: list[str], measure: Measure) -> Path:
     """Tabs, in a folder of two files."""
     for k, name in enumerate(("drive_s", "dist_m")):
@@ -72,7 +78,7 @@ def table_of(write: Writer, folder: Path) -> Path:
     return write(folder, ids, measure_of(plan.programme, plan.sites))
 
 
-@pytest.mark.parametrize("write", [long_form, square_form, folder_form])
+@pytest.mark.parametrize("write", [long_form, square_form, square_form_by_seconds, folder_form])
 def test_plan_on_its_own_table_is_sound(write: Writer, tmp_path: Path) -> None:
     assert audit(planned_on(str(table_of(write, tmp_path)))) == ()
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import sqlite3
 from collections.abc import Callable
 from contextlib import closing
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from datetime import UTC, datetime
 from pathlib import Path
 from types import MappingProxyType
@@ -18,9 +18,15 @@ from georoute.store import geopackage, read_plan, write_plan
 from georoute.store.geopackage import Tables, read_tables
 from georoute.store.migrations import MIGRATIONS, migrated, schema_of
 from georoute.store.schema import SCHEMA
+from georoute.store.settings import read_settings
 from georoute.store.sheets import sheets_of as geopackage_sheets_of
 from tests.store_breaches import programme, tour
 from tests.store_helpers import SATURDAY, example_plan, local
+
+
+@dataclass(frozen=True)
+class Shape:
+    turn: complex
 
 
 @pytest.fixture(scope="module")
@@ -229,6 +235,22 @@ def test_file_open_in_another_program_is_not_replaced(suffix: str, plan: Plan, p
 def test_file_that_a_gis_switched_to_a_write_ahead_log_opens(plan: Plan, path: Path) -> None:
     edit(path, "PRAGMA journal_mode = WAL")
     assert read_plan(path) == plan
+    assert [p.name for p in path.parent.iterdir()] == [path.name]
+    write_plan(plan, path)
+
+
+def test_changes_still_in_the_log_of_a_gis_are_read(path: Path) -> None:
+    with closing(sqlite3.connect(path)) as gis:
+        gis.execute("PRAGMA journal_mode = WAL")
+        gis.execute("UPDATE sites SET notes = 'ring twice'")
+        gis.commit()
+        assert path.with_name(path.name + "-wal").stat().st_size > 0
+        assert {site.notes for site in read_plan(path).sites} == {"ring twice"}
+
+
+def test_setting_of_unknown_type_is_refused() -> None:
+    with pytest.raises(TypeError, match="no way to write"):
+        read_settings(Shape, {"shape.turn": "1j"}, prefix="shape")
 
 
 def test_reading_leaves_the_folder_as_it_was(path: Path) -> None:

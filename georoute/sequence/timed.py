@@ -1,0 +1,130 @@
+"""Order of a day with opening windows."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from georoute.kernels.arrays import leg_mm, leg_ms
+from georoute.kernels.node_queue import empty_queue, new_queue, waiting
+from georoute.kernels.timed import (
+    descend_timed,
+    kick_and_repair_timed,
+    price_timed,
+    refresh_timed,
+)
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from georoute.problem import Problem
+    from georoute.sequence.budget import KickBudget
+    from georoute.sequence.trail import Trail
+
+__all__ = ["by_closing", "order_timed"]
+
+HEAT = 0.1
+"""Temperature at the start, as a share of the day's travel money per leg."""
+KICKS_A_CALL = 50
+STEPS_A_CALL = 100
+KINDS = {1: "two_opt", 2: "or_opt"}
+
+
+def by_closing(problem: Problem, order: NDArray[np.int64]) -> NDArray[np.int64]:
+    """Return the visits by the close of their last window, those without one last."""
+    visits = problem.visits
+    last = visits.window_ptr[order + 1]
+    closed = visits.window_ptr[order] < last
+    closes = np.full(order.shape[0], np.iinfo(np.int64).max)
+    closes[closed] = visits.window_close_ms[last[closed] - 1]
+    return order[np.argsort(closes, kind="stable")]
+
+
+def order_timed(
+    problem: Problem,
+    shift: int,
+    order: NDArray[np.int64],
+    *,
+    budget: KickBudget,
+    trail: Trail,
+) -> NDArray[np.int64]:
+    """Return the best order found, beginning with ``order`` (at least 4 visits)."""
+    search = _Search(problem, shift, order)
+    while waiting(search.queue) > 0 and not budget.stopped():
+        steps = 1 if trail.kept else STEPS_A_CALL
+        kind = int(descend_timed(*search.clock, *search.arrays, steps))
+        if kind > 0:
+            trail.note(KINDS[kind], search.order, int(search.worth[1]))
+    search.kick(budget, trail)
+    return search.order
+
+
+class _Search:
+    """One day in the arrays that ``kernels.timed`` describes."""
+
+    def __init__(self, problem: Problem, shift: int, order: NDArray[np.int64]) -> None:
+        self.names = order.copy()
+        self.clock = (problem.travel, problem.visits, problem.shifts, shift, self.names)
+        m = order.shape[0]
+        self.seq = np.array([[m, *range(m), m + 1]] * 2, np.int64)
+        legs = _legs(problem, shift, order)
+        sums = np.zeros((4, m + 2), np.int64)
+        self.worth = np.zeros(4, np.int64)
+        self.queue = new_queue(np.arange(m))
+        shifts = problem.shifts
+        fixed = int(problem.visits.work_ms[order].sum() + shifts.write_up_ms[shift])
+        ends = (shifts.open_ms[shift], shifts.close_ms[shift], shifts.limit_ms[shift])
+        rates = (shifts.hour_rate[shift], shifts.overtime_rate[shift])
+        tariff = (*rates, shifts.length_rate[shift], shifts.paid_ms[shift], shifts.day_cost[shift])
+        scratch = np.zeros((3, m), np.int64)
+        self.arrays = (
+            legs,
+            self.seq,
+            sums,
+            self.worth,
+            np.array([fixed, *ends], np.int64),
+            np.array(tariff, np.float64),
+            self.queue,
+            scratch,
+            self.seq.copy(),
+        )
+        refresh_timed(legs, self.seq, sums)
+        price_timed(*self.clock, self.seq, scratch, self.worth)
+        travel_money = rates[0] * self.worth[2] + shifts.length_rate[shift] * self.worth[3]
+        self.heat = HEAT * float(travel_money) / (m + 1)
+
+    @property
+    def order(self) -> NDArray[np.int64]:
+        """The visits in sequence."""
+        return self.names[self.seq[0, 1:-1]]
+
+    def kick(self, budget: KickBudget, trail: Trail) -> None:
+        """Kick and repair until the budget is used; end at the best sequence."""
+        kept, best = self.seq[0].copy(), self.seq[0].copy()
+        kept_worth, best_worth = self.worth.copy(), self.worth.copy()
+        self.queue[:] = empty_queue(self.names.shape[0])
+        state = (budget.stream, kept, kept_worth, best, best_worth)
+        while (kicks := budget.next_kicks(KICKS_A_CALL)) > 0:
+            before = best_worth.copy()
+            pace = (self.heat, budget.used, budget.kicks, budget.spent, int(trail.kept))
+            made = kick_and_repair_timed(*self.clock, *self.arrays, *state, kicks, *pace)
+            budget.used += int(made)
+            if not np.array_equal(best_worth, before):
+                trail.note("kick", self.names[best[1:-1]], int(best_worth[1]))
+        self.seq[0] = best
+        self.worth[:] = best_worth
+
+
+def _legs(problem: Problem, shift: int, order: NDArray[np.int64]) -> NDArray[np.int64]:
+    """Return ms and mm between the visits, the start and the end, int64 (2, m + 2, m + 2)."""
+    ends = (problem.shifts.start_place[shift], problem.shifts.end_place[shift])
+    places = np.concatenate((problem.visits.place[order], ends))
+    travel = problem.travel
+    if travel.dense:
+        pairs = np.ix_(places, places)
+        return np.stack((travel.time_ms[pairs], travel.length_mm[pairs]))
+    return np.array(
+        [[[leg(travel, i, j) for j in places] for i in places] for leg in (leg_ms, leg_mm)],
+        np.int64,
+    )

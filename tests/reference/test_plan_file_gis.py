@@ -30,6 +30,12 @@ LAYERS = {
 TABLES = {"visits", "unplaced", "inspectors", "exchanges", "stages", "extra_columns", "plan"}
 
 
+pytestmark = pytest.mark.source(
+    "GDAL, through pyogrio and geopandas, reads the file; OGC 12-128r18 (GeoPackage 1.3.1), "
+    "requirement numbers from memory"
+)
+
+
 @pytest.fixture(scope="module")
 def plan() -> Plan:
     return example_plan()

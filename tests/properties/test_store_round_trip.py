@@ -29,10 +29,11 @@ from georoute.domain.plan import (
     StopRule,
     Unplaced,
 )
+from georoute.domain.programme import Programme, RegisterSource
 from georoute.domain.run import Effort
 from georoute.domain.sites import Base, OpenInterval, Site, Visit
 from georoute.store import read_plan, write_plan
-from tests.store_helpers import example_plan
+from tests.store_helpers import example_plan, example_programme
 
 K = TypeVar("K")
 T = TypeVar("T")
@@ -182,48 +183,78 @@ def sites(headers: Sequence[str]) -> st.SearchStrategy[Site]:
     )
 
 
+def unplaced() -> st.SearchStrategy[Unplaced]:
+    return st.builds(
+        Unplaced,
+        visit_id=texts,
+        site_id=texts,
+        code=st.sampled_from(ReasonCode),
+        message=texts,
+        figures=mappings(texts, figures),
+    )
+
+
+def exchanges() -> st.SearchStrategy[Exchange]:
+    pairs = tuples(st.tuples(texts, texts))
+    return st.builds(
+        Exchange,
+        tour_id=texts,
+        step=numbers,
+        kind=texts,
+        legs_out=pairs,
+        legs_in=pairs,
+        cost_before=figures,
+        cost_after=figures,
+    )
+
+
+@st.composite
+def programmes(draw: st.DrawFn) -> Programme:
+    programme = example_programme()
+    bases = st.builds(Base, base_id=texts, name=texts, lat_deg=degrees, lon_deg=degrees)
+    tariffs = st.builds(
+        Tariff,
+        currency=texts,
+        hour=figures,
+        km=figures,
+        overtime_hour=figures,
+        day_opened=figures,
+    )
+    efforts = st.builds(
+        Effort,
+        name=texts,
+        kicks_per_stop=numbers,
+        relocation_rounds=numbers,
+        seconds=maybe(figures),
+    )
+    registers = st.builds(
+        RegisterSource,
+        path=texts,
+        columns=mappings(texts, texts),
+        sheet=maybe(texts),
+        layer=maybe(texts),
+        crs=maybe(texts),
+    )
+    return replace(
+        programme,
+        title=draw(texts),
+        zone=draw(st.sampled_from(ZONES)),
+        first_date=draw(days),
+        bases=draw(tuples(bases)),
+        inspectors=draw(tuples(inspectors())),
+        tariff=draw(tariffs),
+        seed=draw(st.integers()),
+        effort=draw(efforts),
+        register=draw(registers),
+    )
+
+
 @st.composite
 def plans(draw: st.DrawFn) -> Plan:
-    plan = example_plan()
-    zone = ZoneInfo(draw(st.sampled_from(ZONES)))
+    plan, programme = example_plan(), draw(programmes())
+    zone = ZoneInfo(programme.zone)
     headers = draw(st.lists(texts | st.sampled_from(["NAME", "fid", "geom"]), unique=True))
-    programme = replace(
-        plan.programme,
-        title=draw(texts),
-        zone=zone.key,
-        first_date=draw(days),
-        bases=draw(
-            tuples(st.builds(Base, base_id=texts, name=texts, lat_deg=degrees, lon_deg=degrees))
-        ),
-        inspectors=draw(tuples(inspectors())),
-        tariff=draw(
-            st.builds(
-                Tariff,
-                currency=texts,
-                hour=figures,
-                km=figures,
-                overtime_hour=figures,
-                day_opened=figures,
-            )
-        ),
-        seed=draw(st.integers()),
-        effort=draw(
-            st.builds(
-                Effort,
-                name=texts,
-                kicks_per_stop=numbers,
-                relocation_rounds=numbers,
-                seconds=maybe(figures),
-            )
-        ),
-        register=replace(
-            plan.programme.register,
-            path=draw(texts),
-            columns=draw(mappings(texts, texts)),
-            sheet=draw(maybe(texts)),
-        ),
-    )
-    pair = st.tuples(texts, texts)
+    stages = st.builds(StageCost, stage=texts, cost=figures, placed=numbers)
     return replace(
         plan,
         plan_id=draw(texts),
@@ -231,33 +262,9 @@ def plans(draw: st.DrawFn) -> Plan:
         sites=draw(tuples(sites(headers))),
         visits=draw(tuples(visits(zone))),
         tours=draw(tuples(tours(zone))),
-        unplaced=draw(
-            tuples(
-                st.builds(
-                    Unplaced,
-                    visit_id=texts,
-                    site_id=texts,
-                    code=st.sampled_from(ReasonCode),
-                    message=texts,
-                    figures=mappings(texts, figures),
-                )
-            )
-        ),
-        stages=draw(tuples(st.builds(StageCost, stage=texts, cost=figures, placed=numbers))),
-        exchanges=draw(
-            tuples(
-                st.builds(
-                    Exchange,
-                    tour_id=texts,
-                    step=numbers,
-                    kind=texts,
-                    legs_out=tuples(pair),
-                    legs_in=tuples(pair),
-                    cost_before=figures,
-                    cost_after=figures,
-                )
-            )
-        ),
+        unplaced=draw(tuples(unplaced())),
+        stages=draw(tuples(stages)),
+        exchanges=draw(tuples(exchanges())),
         provenance=replace(
             plan.provenance,
             issued=draw(maybe(moments(ZoneInfo(draw(st.sampled_from(ZONES)))))),

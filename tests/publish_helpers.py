@@ -191,19 +191,20 @@ def timed_tour(
                     latest_arrive=latest,
                 )
             )
-    return _summed(setting, person, day, depart, now, stops, legs, visits)
+    work_s = sum(visit.work_s + visit.access_s for visit in visits)
+    return _summed(setting, person, (depart, now), stops, legs, work_s=work_s)
 
 
 def _summed(
     setting: Programme,
     person: Inspector,
-    day: date,
-    depart: datetime,
-    back: datetime,
+    out_and_back: tuple[datetime, datetime],
     stops: list[Stop],
     legs: list[Leg],
-    visits: Sequence[Visit],
+    *,
+    work_s: float,
 ) -> DayTour:
+    depart, back = out_and_back
     drive_s = sum(leg.drive_s for leg in legs)
     dist_m = sum(leg.dist_m for leg in legs)
     finish = back + timedelta(seconds=person.write_up_s)
@@ -212,9 +213,9 @@ def _summed(
     money = setting.tariff
     cost = (length_s - over_s) / 3600 * money.hour + over_s / 3600 * money.overtime_hour
     return DayTour(
-        tour_id=shift_id_of(person.inspector_id, day),
+        tour_id=shift_id_of(person.inspector_id, depart.date()),
         inspector_id=person.inspector_id,
-        day=day,
+        day=depart.date(),
         start_base_id=person.start_base_id,
         end_base_id=person.end_base_id,
         depart=depart,
@@ -222,7 +223,7 @@ def _summed(
         finish=finish,
         stops=tuple(stops),
         legs=tuple(legs),
-        work_s=sum(visit.work_s + visit.access_s for visit in visits),
+        work_s=work_s,
         drive_s=drive_s,
         wait_s=sum(stop.wait_s for stop in stops),
         write_up_s=person.write_up_s,

@@ -120,7 +120,7 @@ def window_text(visit: Visit, tour: DayTour, figures: Figures) -> str:
     if not today:
         return figures.words("any_time")
     return ", ".join(
-        f"{figures.clock(span.opens, tour.day, round_up=True)}–"
+        f"{figures.clock(span.opens, tour.day, round_up=True)}\u2013"
         f"{figures.clock(span.closes, tour.day, round_up=False)}"
         for span in today
     )

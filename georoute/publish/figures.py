@@ -21,7 +21,8 @@ __all__ = ["Figures"]
 _MINUTE_S = 60
 _HOUR_S = 3600
 _NO_MINOR_UNIT = frozenset(
-    "BIF CLP DJF GNF ISK JPY KMF KRW PYG RWF UGX VND VUV XAF XOF XPF".split()
+    {"BIF", "CLP", "DJF", "GNF", "ISK", "JPY", "KMF", "KRW"}
+    | {"PYG", "RWF", "UGX", "VND", "VUV", "XAF", "XOF", "XPF"}
 )
 """Currencies without a minor unit (ISO 4217, list one, from memory)."""
 _SHORT_KM = 100.0

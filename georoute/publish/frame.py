@@ -105,21 +105,23 @@ def _hash_source(text: str) -> str:
     return f"'sha256-{base64.b64encode(digest).decode('ascii')}'"
 
 
-class _Verbatim(Element):  # type: ignore[misc]  # branca is untyped
+class _Verbatim(Element):
     """A script or style sheet as it is; branca's Element would read it as a template."""
 
     def __init__(self, tag: str, text: str) -> None:
         super().__init__()
         self._name = f"verbatim_{tag}"
+        self._id = hashlib.sha256(text.encode("utf-8")).hexdigest()
         self.tag = tag
         self.text = text
 
-    def render(self, **_kwargs: Any) -> str:  # noqa: ANN401  # the signature is branca's
+    # typing.override is of Python 3.12
+    def render(self, **_kwargs: Any) -> str:  # type: ignore[explicit-override]  # noqa: ANN401  # branca's signature
         return f"<{self.tag}>{self.text}</{self.tag}>"
 
 
-class SurveyMap(folium.Map):  # type: ignore[misc]  # folium is untyped
-    """folium's map without its links; ``label`` is the id of its name among the words."""
+class SurveyMap(folium.Map):
+    """The map of folium without its links; ``label`` is the id of its name among the words."""
 
     default_js: list[tuple[str, str]] = []  # noqa: RUF012  # folium's own attribute, kept empty
     default_css: list[tuple[str, str]] = []  # noqa: RUF012  # as above
@@ -141,7 +143,7 @@ class SurveyMap(folium.Map):  # type: ignore[misc]  # folium is untyped
         self.label = label
 
 
-class DataLayer(MacroElement):  # type: ignore[misc]  # branca is untyped
+class DataLayer(MacroElement):
     """A layer drawn by one of our own functions from the data island of the page."""
 
     _template = folium.template.Template(
@@ -151,13 +153,13 @@ class DataLayer(MacroElement):  # type: ignore[misc]  # branca is untyped
     )
 
     def __init__(self, function: str) -> None:
-        super().__init__()
+        super().__init__()  # type: ignore[no-untyped-call]  # branca's own lacks types
         self._name = "data_layer"
         self._id = function
         self.function = function
 
 
-class Page(Figure):  # type: ignore[misc]  # branca is untyped
+class Page(Figure):
     """A whole page around a map: folium's Figure with our own skeleton."""
 
     def __init__(self, *, template: str, scripts: tuple[str, ...], styles: tuple[str, ...]) -> None:
@@ -166,26 +168,26 @@ class Page(Figure):  # type: ignore[misc]  # branca is untyped
         self._scripts = scripts
         self.header = Element()
         self.header._parent = self  # noqa: SLF001  # as branca's own Figure does
-        for name, text in [("leaflet_style", leaflet_css()), *((s, own(s)) for s in styles)]:
-            self.header.add_child(_Verbatim("style", text), name=name)
-        self.header.add_child(_Verbatim("script", leaflet_js()), name="leaflet_script")
+        self._styles = [_Verbatim("style", text) for text in (leaflet_css(), *map(own, styles))]
+        self._library = _Verbatim("script", leaflet_js())
+        for part in (*self._styles, self._library):
+            self.header.add_child(part)
 
     def page_text(self, data: Mapping[str, object], values: Mapping[str, object]) -> str:
         """Return the page: ``data`` goes to its island, ``values`` to its template."""
         for child in self._children.values():
             child.render()
-        calls = "".join(child.render() for child in self.script._children.values())  # noqa: SLF001
+        calls = self.script.render()
         program = "\n".join(['(() => {\n"use strict";', *map(own, self._scripts), calls, "})();"])
-        parts = list(self.header._children.values())  # noqa: SLF001  # branca has no public list
-        scripts = [part.text for part in parts if part.tag == "script"] + [program]
-        styles = [part.text for part in parts if part.tag == "style"]
+        scripts = [self._library.text, program]
+        styles = [style.text for style in self._styles]
         return (
             environment()
             .get_template(self._page_template)
             .render(
                 **values,
                 policy=policy(scripts, styles),
-                head=Markup("\n".join(part.render() for part in parts)),  # noqa: S704  # our own parts
+                head=Markup("\n".join(part.render() for part in (*self._styles, self._library))),  # noqa: S704  # our own parts
                 map_frame=Markup(self.html.render().strip()),  # noqa: S704  # the empty map element
                 program=Markup(program),  # noqa: S704  # our own scripts
                 island=Markup(island_json(data)),  # noqa: S704  # escaped by island_json

@@ -37,11 +37,9 @@ def _places(edition: Edition) -> dict[str, tuple[float, float]]:
 def _outermost(tour: DayTour, places: dict[str, tuple[float, float]]) -> list[str]:
     """Return the stops where the tag of a tour may hang: the farthest one each way."""
     keys = [f"site|{stop.site_id}" for stop in tour.stops]
-    chosen = [
-        choose(keys, key=lambda key, axis=axis: places[key][axis])
-        for axis in (0, 1)
-        for choose in (max, min)
-    ]
+    south_to_north = sorted(keys, key=lambda key: places[key][0])
+    west_to_east = sorted(keys, key=lambda key: places[key][1])
+    chosen = [line[end] for line in (south_to_north, west_to_east) for end in (0, -1)]
     return list(dict.fromkeys(chosen))
 
 

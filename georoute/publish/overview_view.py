@@ -179,7 +179,7 @@ def _tour_row(
         day_href=page_name("day", tour.day, person),
         sheet_href=page_name("sheet", tour.day, person),
         stops=_stops_text(tour, index, figures),
-        out_back=figures.marked(f"{out}–{back}"),
+        out_back=figures.marked(f"{out}\u2013{back}"),
         drive=figures.marked(figures.compact(tour.drive_s)),
         length=figures.kilometres(tour.dist_m),
         work=figures.compact(tour.work_s),

@@ -24,6 +24,7 @@ WIDTH = 700.0
 HEIGHT = 380.0
 PLATE_HEIGHT = 18.0
 _MARGIN_X, _MARGIN_Y = 92.0, 36.0
+_KM = 1000.0
 _SMALLEST_SPAN_M = 400.0
 _LETTER = 6.3
 """Width of a letter of a plate; the face may differ, so it is taken wide."""
@@ -42,8 +43,9 @@ _CORNERS = np.array(
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Plate:
-    """A plate on paper: box, leader (x1, y1, x2, y2), and what it says; ``parted`` is where the
-    line between number and text stands. The plate of a base has no number.
+    """A plate on paper: box, leader (x1, y1, x2, y2), and what it says.
+
+    ``parted`` is where the line between number and text stands. The plate of a base has no number.
     """
 
     x: float
@@ -115,8 +117,8 @@ def _scale(unit_m: float, words: Words) -> tuple[float, str]:
     power = 10.0 ** math.floor(math.log10(limit_m))
     metres = max(step * power for step in (1, 2, 5) if step * power <= limit_m)
     text = (
-        words("kilometres", km=f"{metres / 1000:g}")
-        if metres >= 1000
+        words("kilometres", km=f"{metres / _KM:g}")
+        if metres >= _KM
         else words("scale_metres", metres=f"{metres:g}")
     )
     return round(metres / unit_m, 1), text

@@ -20,6 +20,7 @@ if TYPE_CHECKING:
 __all__ = ["Block", "Bracket", "Tick", "TimeRule", "time_axis", "time_rule"]
 
 _HOUR_S = 3600.0
+_WHOLE = 100.0
 _DIGIT = 1.05
 """Share of the rule (per cent) that a digit takes; a narrower block wears its number above."""
 _LABEL_ROOM = 2.2
@@ -96,7 +97,7 @@ class _Axis:
 
     def at(self, moment: datetime) -> float:
         share = (moment - self.start).total_seconds() / self.length_s
-        return round(100 * min(1.0, max(0.0, share)), 3)
+        return round(_WHOLE * min(1.0, max(0.0, share)), 3)
 
     def span(self, start: datetime, end: datetime) -> tuple[float, float]:
         x = self.at(start)
@@ -143,7 +144,7 @@ def _brackets(
     wanted = []
     for stop, state in zip(tour.stops, states, strict=True):
         for span in visits[stop.visit_id].open_intervals:
-            apart = span.closes <= axis.start or axis.at(span.opens) >= 100
+            apart = span.closes <= axis.start or axis.at(span.opens) >= _WHOLE
             covers = span.opens <= tour.depart and span.closes >= tour.back
             if not apart and not covers:
                 x, width = axis.span(span.opens, span.closes)

@@ -34,12 +34,13 @@ ENGLISH: dict[str, str] = {
     "interval": "{low} to {high}",
     # caution and honesty
     "caution": "Caution",
-    "caution_text": "Times are estimates. Obey signs, closures and weight/height limits – they "
-    "are not all in this data. Read or change the plan only while parked. Local law, your "
+    "caution_text": "Times are estimates. Obey signs, closures and weight/height limits \u2013 "
+    "they are not all in this data. Read or change the plan only while parked. Local law, your "
     "employer's rules and licensed practice prevail.",
-    "caution_more": "Take breaks; do not go on when tired; report an unsafe schedule. Only "
-    "persons with the required licence or certificate may inspect. Not for emergency dispatch. "
-    "This page may hold personal data: keep it among those who need it.",
+    "caution_more": "Breaks are not placed in this plan: keep time for them. Do not go on when "
+    "tired; report an unsafe schedule. Limits of vehicles are not checked. Only persons with the "
+    "required licence or certificate may inspect. Not for emergency dispatch. This page may hold "
+    "personal data: keep it among those who need it.",
     "straight": "Straight lines between stops, not along roads",
     "estimated_note": "≈ marks an estimate, not measured on roads ({source}). The true drive time "
     "of a leg is expected between {low} and {high} times the figure; clock times follow from it.",
@@ -100,7 +101,6 @@ ENGLISH: dict[str, str] = {
     "time_rule_text": "{date}: out {out}, {stops} stops, back {back}, finish {finish}. The run "
     "list gives every time in words.",
     "leave": "leave",
-    "leave_base": "Leave the base",
     "arrive": "arrive",
     "latest": "latest arrival",
     "back_at": "Back at {base}",
@@ -117,7 +117,6 @@ ENGLISH: dict[str, str] = {
     "due": "Due",
     "overdue": "overdue: was due {date}",
     "site_id": "Site",
-    "extra": "More from the register",
     "wait_minutes": "wait {minutes} min",
     "late_minutes": "late {minutes} min",
     "early_text": "Early: wait {minutes} min, work starts {start}",
@@ -126,7 +125,7 @@ ENGLISH: dict[str, str] = {
     "home_leg": "Last leg, back to base: drive {time} · {km}",
     "show_on_map": "show on the map",
     "slack": "slack {time}",
-    "shift_frame": "shift {start}–{end}",
+    "shift_frame": "shift {start}\u2013{end}",
     "result": "Result",
     # legend
     "legend_plate": "stop number, arrival",
@@ -149,14 +148,14 @@ ENGLISH: dict[str, str] = {
     "visit": "Visit",
     "reason": "Reason",
     "capacity": "Capacity",
-    "capacity_line": "{visits} visits need {work} of work and at least {travel} of travel; {shifts} "
-    "shifts give {shift} and up to {overtime} of overtime.",
+    "capacity_line": "{visits} visits need {work} of work and at least {travel} of travel; "
+    "{shifts} shifts give {shift} and up to {overtime} of overtime.",
     "capacity_short": "Short by {short}: this cannot all be done.",
     "capacity_enough": "The sum alone does not rule the work out.",
     "tours": "Tours",
     "tour": "Tour",
     "stops_late": "{stops}, {late} late",
-    "out_back": "Out–back",
+    "out_back": "Out\u2013back",
     "hours_short": "{word}, h:min",
     "kilometres_short": "km",
     "day_bar": "hour of the day",
@@ -210,7 +209,6 @@ ENGLISH: dict[str, str] = {
     "sheet_no_access": "No access, why:",
     "sheet_map": "Sketch of the tour",
     "sheet_space": "Write-up",
-    "page_of": "page",
     "scale_metres": "{metres} m",
     "north": "N",
 }

@@ -26,7 +26,8 @@ SPANISH: dict[str, str] = {
     "altura: no todos están en estos datos. Lea o cambie el plan solo con el vehículo detenido. "
     "Prevalecen la ley local, las reglas de su empleador y el ejercicio autorizado de la "
     "profesión.",
-    "caution_more": "Haga pausas; no siga si está cansado; avise si el horario no es seguro. Solo "
+    "caution_more": "Las pausas no están en este plan: reserve tiempo para ellas. No siga si está "
+    "cansado; avise si el horario no es seguro. No se comprueban límites de vehículos. Solo "
     "pueden inspeccionar personas con la licencia o el certificado exigido. No sirve para "
     "emergencias. Esta página puede contener datos personales: guárdela entre quienes la "
     "necesitan.",
@@ -92,7 +93,6 @@ SPANISH: dict[str, str] = {
     "time_rule_text": "{date}: salida {out}, {stops} paradas, regreso {back}, término {finish}. "
     "La lista de paradas da cada hora en palabras.",
     "leave": "salir",
-    "leave_base": "Salir de la base",
     "arrive": "llegar",
     "latest": "llegar a más tardar",
     "back_at": "Regreso a {base}",
@@ -109,7 +109,6 @@ SPANISH: dict[str, str] = {
     "due": "Vence",
     "overdue": "vencida: venció el {date}",
     "site_id": "Sitio",
-    "extra": "Más del registro",
     "wait_minutes": "espera {minutes} min",
     "late_minutes": "tarde {minutes} min",
     "early_text": "Temprano: espere {minutes} min, el trabajo empieza {start}",
@@ -118,7 +117,7 @@ SPANISH: dict[str, str] = {
     "home_leg": "Último tramo, de vuelta a la base: manejo {time} · {km}",
     "show_on_map": "ver en el mapa",
     "slack": "holgura {time}",
-    "shift_frame": "turno {start}–{end}",
+    "shift_frame": "turno {start}\u2013{end}",
     "result": "Resultado",
     # legend
     "legend_plate": "número de parada, llegada",
@@ -148,7 +147,7 @@ SPANISH: dict[str, str] = {
     "tours": "Recorridos",
     "tour": "Recorrido",
     "stops_late": "{stops}, {late} tarde",
-    "out_back": "Salida–regreso",
+    "out_back": "Salida\u2013regreso",
     "hours_short": "{word}, h:min",
     "kilometres_short": "km",
     "day_bar": "hora del día",
@@ -202,7 +201,6 @@ SPANISH: dict[str, str] = {
     "sheet_no_access": "Sin acceso, por qué:",
     "sheet_map": "Croquis del recorrido",
     "sheet_space": "Informe",
-    "page_of": "página",
     "scale_metres": "{metres} m",
     "north": "N",
 }

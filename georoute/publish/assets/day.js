@@ -28,7 +28,8 @@ function drawDay(map) {
     const leg = tour.legs[number - 1];
     const ends = [[places[leg.from].lat, places[leg.from].lon],
       [places[leg.to].lat, places[leg.to].lon]];
-    map.fitBounds(L.latLngBounds(ends), { padding: [54, 54], maxZoom: 15, animate: false });
+    const room = Math.min(54, map.getSize().y / 5);
+    map.fitBounds(L.latLngBounds(ends), { padding: [room, room], maxZoom: 15, animate: false });
   };
 
   fit(); // a layer is set up only once the map has a view

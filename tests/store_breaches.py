@@ -266,9 +266,29 @@ BREACHES: tuple[tuple[str, str, Breach], ...] = (
         lambda p: replace(p, capacity=replace(p.capacity, work_h=p.capacity.work_h - 0.5)),
     ),
     (
-        "capacity below nothing",
+        "capacity counts hours that are not there",
         "capacity",
-        lambda p: replace(p, capacity=replace(p.capacity, shift_h=-1.0)),
+        lambda p: replace(p, capacity=replace(p.capacity, shift_h=16.0)),
+    ),
+    (
+        "capacity counts overtime that is not there",
+        "capacity",
+        lambda p: replace(p, capacity=replace(p.capacity, overtime_h=10.0)),
+    ),
+    (
+        "travel below nothing",
+        "capacity",
+        lambda p: replace(p, capacity=replace(p.capacity, least_travel_h=-1.0)),
+    ),
+    (
+        "least travel above what was driven",
+        "least_travel",
+        lambda p: replace(
+            p,
+            visits=(*p.visits[:9], p.visits[10]),
+            unplaced=(),
+            capacity=replace(p.capacity, least_travel_h=5.0),
+        ),
     ),
     (
         "estimate called measured",

@@ -192,8 +192,9 @@ def example_plan(method: TravelMethod = TravelMethod.DETOUR) -> Plan:
             shifts=3,
             work_h=sum(v.work_s + v.access_s for v in visits) / 3600,
             least_travel_h=0.6,
-            shift_h=16.0,
-            overtime_h=9.0,
+            # Anna: twice 4 h less 15 min, and 4 h more; Bo: 8 h of the 9 that pass, and 1 h more.
+            shift_h=2 * 3.75 + 8.0,
+            overtime_h=2 * 4.0 + 1.0,
         ),
         travel=TravelNote(
             source="written down for a test",

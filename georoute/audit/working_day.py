@@ -11,7 +11,7 @@ if TYPE_CHECKING:
     from georoute.domain.people import Inspector
     from georoute.domain.programme import Programme
 
-__all__ = ["WorkingDay", "count_working_days", "why_not_worked", "working_day"]
+__all__ = ["WorkingDay", "why_not_worked", "working_dates", "working_day"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -49,11 +49,13 @@ def working_day(programme: Programme, inspector: Inspector, day: date) -> Workin
     )
 
 
-def count_working_days(programme: Programme) -> dict[str, int]:
-    """Return how many dates of the horizon each inspector works, by inspector id."""
+def working_dates(programme: Programme) -> list[tuple[Inspector, date]]:
+    """Return every date of the horizon that an inspector works, with the inspector."""
     length = (programme.last_date - programme.first_date).days + 1
     days = [programme.first_date + timedelta(days=k) for k in range(length)]
-    return {
-        person.inspector_id: sum(not why_not_worked(programme, person, day) for day in days)
+    return [
+        (person, day)
+        for day in days
         for person in programme.inspectors
-    }
+        if not why_not_worked(programme, person, day)
+    ]

@@ -1,1 +1,5 @@
 """Sites to days: the first split."""
+
+from georoute.split.days import split
+
+__all__ = ["split"]

@@ -32,6 +32,11 @@ class TourLook:
     dash: str
     mark: str
 
+    @property
+    def symbol(self) -> str:
+        """The id of the strand that shows this look in a table, whatever its hue."""
+        return f"{self.mark}-outlined" if self.outlined else self.mark
+
 
 def looks_of(inspectors: Sequence[Inspector], inspector_id: str, day: date) -> TourLook:
     """Return the look of one inspector's tour on one date."""

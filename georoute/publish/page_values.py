@@ -95,5 +95,7 @@ class Edition:
             "revision": words("revision", revision=self.plan.provenance.revision),
             "issued": self.figures.issued(self.issued),
             "travel_note": self.travel_note(),
+            "map_note": words("straight_estimated" if self.figures.estimated else "straight"),
+            "times_note": words("times_estimated") if self.figures.estimated else "",
             "about": self.about(),
         }

@@ -36,7 +36,7 @@ _CORNERS = np.array(
     [
         [WIDTH - 32.0, 0.0, 32.0, 52.0],  # north
         [0.0, HEIGHT - 30.0, _LONGEST_SCALE + 20.0, 30.0],  # scale
-        [WIDTH - 290.0, HEIGHT - 18.0, 290.0, 18.0],  # what the lines are
+        [WIDTH - 330.0, HEIGHT - 18.0, 330.0, 18.0],  # what the lines are
     ]
 )
 

@@ -42,6 +42,8 @@ ENGLISH: dict[str, str] = {
     "required licence or certificate may inspect. Not for emergency dispatch. This page may hold "
     "personal data: keep it among those who need it.",
     "straight": "Straight lines between stops, not along roads",
+    "straight_estimated": "Straight lines, not along roads; all times are estimates",
+    "times_estimated": "all times are estimates",
     "estimated_note": "≈ marks an estimate, not measured on roads ({source}). The true drive time "
     "of a leg is expected between {low} and {high} times the figure; clock times follow from it.",
     "estimated_no_interval": "≈ marks an estimate, not measured on roads ({source}). No interval "
@@ -184,6 +186,7 @@ ENGLISH: dict[str, str] = {
     "map_previous": "Previous stop",
     "map_next": "Next stop",
     "map_north": "North is up",
+    "map_letters": "N S E W",
     "map_shown": "Stop {number}, {name}, is shown on the map",
     "map_next_stop": "next stop",
     "map_too_many": "Tags are shown for up to {count} tours: choose fewer in the table.",

@@ -32,6 +32,8 @@ SPANISH: dict[str, str] = {
     "emergencias. Esta página puede contener datos personales: guárdela entre quienes la "
     "necesitan.",
     "straight": "Líneas rectas entre paradas, no por calles",
+    "straight_estimated": "Líneas rectas, no por calles; todas las horas son estimaciones",
+    "times_estimated": "todas las horas son estimaciones",
     "estimated_note": "≈ indica una estimación, no medida sobre calles ({source}). El tiempo real "
     "de un tramo se espera entre {low} y {high} veces la cifra; las horas se derivan de ella.",
     "estimated_no_interval": "≈ indica una estimación, no medida sobre calles ({source}). No se "
@@ -176,6 +178,7 @@ SPANISH: dict[str, str] = {
     "map_previous": "Parada anterior",
     "map_next": "Parada siguiente",
     "map_north": "El norte está arriba",
+    "map_letters": "N S E O",
     "map_shown": "La parada {number}, {name}, se ve en el mapa",
     "map_next_stop": "próxima parada",
     "map_too_many": "Hay rótulos para hasta {count} recorridos: elija menos en la tabla.",

@@ -27,10 +27,12 @@ function gridStep(span) {
   return steps.find((step) => span / step <= 5) || 45;
 }
 
-function degrees(value, step, positive, negative) {
+function degrees(value, step, eastward) {
+  const [north, south, east, west] = words.map_letters.split(" ");
+  const [positive, negative] = eastward ? [east, west] : [north, south];
   const digits = Math.max(0, Math.ceil(-Math.log10(step) - 1e-9));
   const wrapped = ((((value + 180) % 360) + 360) % 360) - 180;
-  const shown = positive === "E" ? wrapped : value;
+  const shown = eastward ? wrapped : value;
   return `${Math.abs(shown).toFixed(digits)}° ${shown < 0 ? negative : positive}`;
 }
 
@@ -49,7 +51,7 @@ function drawGrid(map, group) {
     group.append(svg("line", { x1: a.x, y1: a.y, x2: b.x, y2: b.y }));
     const at = a.x - corner.x;
     if (at < 70 || at > size.x - 60) continue;
-    group.append(svg("text", { x: a.x + 3, y: corner.y + 12 }, degrees(k * step, step, "E", "W")));
+    group.append(svg("text", { x: a.x + 3, y: corner.y + 12 }, degrees(k * step, step, true)));
   }
   for (let k = Math.ceil(low.lat / step); k * step <= high.lat; k += 1) {
     const a = map.latLngToLayerPoint([k * step, low.lng]);
@@ -58,7 +60,7 @@ function drawGrid(map, group) {
     const at = a.y - corner.y;
     if (at < 24 || at > size.y - 40) continue;
     const place = { x: corner.x + size.x - 4, y: a.y - 3, "text-anchor": "end" };
-    group.append(svg("text", place, degrees(k * step, step, "N", "S")));
+    group.append(svg("text", place, degrees(k * step, step, false)));
   }
 }
 

@@ -4,6 +4,7 @@ Chile on 5 April 2026 (24:00 becomes 23:00 the evening before) is that of the IA
 
 from __future__ import annotations
 
+from dataclasses import replace
 from datetime import UTC, date, datetime, timedelta
 from zoneinfo import ZoneInfo
 
@@ -98,6 +99,14 @@ def test_hue_is_the_inspectors_and_mark_the_weekdays() -> None:
     assert len({row[0].hue for row in looks}) == 3
     assert len({look.mark for look in looks[0]}) == len({look.dash for look in looks[0]}) == 7
     assert [look.mark for look in looks[0]] == [look.mark for look in looks[1]]
+
+
+def test_more_inspectors_than_hues_are_outlined() -> None:
+    (person,) = programme().inspectors
+    people = [replace(person, inspector_id=str(k)) for k in range(8)]
+    looks = [looks_of(people, str(k), DAY) for k in range(8)]
+    assert len({(look.hue, look.outlined) for look in looks}) == 8
+    assert [look.outlined for look in looks] == [False] * 6 + [True] * 2
 
 
 def test_vermillion_is_no_hue_of_a_tour() -> None:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from itertools import permutations
+from itertools import pairwise, permutations
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -11,7 +11,7 @@ from georoute.kernels.arrays import MUST, Shifts, Travel, Visits
 from georoute.problem import Problem
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Iterable, Sequence
 
     from numpy.typing import NDArray
 
@@ -86,7 +86,9 @@ def one_shift(
         one(limit_ms),
         one(0),
         one(FAR),
-        *(np.array([rate]) for rate in rates),
+        np.array([rates[0]]),
+        np.array([rates[1]]),
+        np.array([rates[2]]),
         one(0),
         one(0),
         one(0),
@@ -97,23 +99,24 @@ def plane_table(rng: np.random.Generator, places: int, *, side: int = 1000) -> N
     """Return rounded straight-line distances between random points: symmetric."""
     xy = rng.integers(0, side, (places, 2))
     d = xy[:, None, :] - xy[None, :, :]
-    return np.floor(np.sqrt((d * d).sum(axis=2)) + 0.5).astype(np.int64)
+    table: NDArray[np.int64] = np.floor(np.sqrt((d * d).sum(axis=2)) + 0.5).astype(np.int64)
+    return table
 
 
 def one_way_table(rng: np.random.Generator, places: int, *, most: int = 1000) -> NDArray[np.int64]:
     """Return random costs without any symmetry."""
-    table = rng.integers(1, most, (places, places)).astype(np.int64)
+    table: NDArray[np.int64] = rng.integers(1, most, (places, places), np.int64)
     np.fill_diagonal(table, 0)
     return table
 
 
-def plain_money(problem: Problem, order: Sequence[int]) -> int:
+def plain_money(problem: Problem, order: Iterable[int]) -> int:
     """Return the travel money of an order, each leg rounded once: a loop over the tables."""
     shifts, travel = problem.shifts, problem.travel
     places = [int(shifts.start_place[0]), *(int(problem.visits.place[v]) for v in order)]
     places.append(int(shifts.end_place[0]))
     total = 0
-    for a, b in zip(places, places[1:], strict=False):
+    for a, b in pairwise(places):
         money = float(shifts.hour_rate[0]) * int(travel.time_ms[a, b])
         money += float(shifts.length_rate[0]) * int(travel.length_mm[a, b])
         total += int(np.floor(money + 0.5))

@@ -142,7 +142,7 @@ def _try_turns(
 @kernel
 def _in_turn(p: Int, q: Int, r: Int) -> bool:
     """Tell whether going round from p one meets q before r (all different)."""
-    return (p < q < r) or (q < r < p) or (r < p < q)
+    return bool((p < q < r) or (q < r < p) or (r < p < q))
 
 
 @kernel

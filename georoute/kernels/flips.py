@@ -77,12 +77,10 @@ def reverse(tour: NDArray[np.int64], first: Int, last: Int) -> None:
 
 
 @kernel
-def exchange(
-    tour: NDArray[np.int64], log: NDArray[np.int64], a: Int, b: Int, c: Int, d: Int
-) -> None:
+def exchange(tour: NDArray[np.int64], log: NDArray[np.int64], a: Int, b: Int, c: Int) -> None:
     """Replace legs a-b and c-d by a-c and b-d, where b follows a as d follows c.
 
-    "Follows" is meant in either direction of the tour, the same for both legs.
+    "Follows" is meant in either direction of the tour, the same for both legs; so d is known.
     """
     if next_of(tour, a) == b:
         first = tour[1, b]

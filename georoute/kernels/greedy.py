@@ -62,7 +62,7 @@ def _nearest_end(
 ) -> tuple[Int, Int]:
     """Return the cheapest free end to go to, or -1, and how many of ``ends`` are still free."""
     chosen = np.int64(-1)
-    cheapest = np.int64(0)
+    cheapest: Int = np.int64(0)
     k = 0
     while k < count:
         if done[ends[k]]:
@@ -93,10 +93,10 @@ def greedy_symmetric(
     beside = np.empty((n, 2), np.int64)
     _fragments(beside, first, second)
     ends = np.flatnonzero(beside[:, 1] < 0)
-    count = ends.shape[0]
+    count: Int = ends.shape[0]
     done = np.zeros(n, np.bool_)
     order = np.empty(n, np.int64)
-    here = ends[0]
+    here: Int = ends[0]
     for k in range(n):
         order[k] = here
         done[here] = True
@@ -135,10 +135,10 @@ def greedy_directed(
         after[a] = b
         before[b] = a
     ends = np.flatnonzero(before < 0)
-    count = ends.shape[0]
+    count: Int = ends.shape[0]
     done = np.zeros(n, np.bool_)
     order = np.empty(n, np.int64)
-    here = np.int64(0)
+    here: Int = np.int64(0)
     while before[here] >= 0:
         here = before[here]
     for k in range(n):

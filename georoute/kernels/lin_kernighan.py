@@ -124,13 +124,12 @@ def _try_chain(
             undo(tour, log, log[0, 0] - 1)
             continue
         chain[level, 1] = choice + 1
-        t3 = chain[level, 5 + 3 * choice]
         t4 = chain[level, 6 + 3 * choice]
         gain = chain[level, 7 + 3 * choice]
         closed = gain - leg_money(table, points, price, t4, t1)
         if closed <= 0 and level + 1 >= depth:
             continue
-        exchange(tour, log, t1, chain[level, 2], t4, t3)
+        exchange(tour, log, t1, chain[level, 2], t4)
         if closed > 0:
             _push_chain(queue, chain, level, t1)
             return closed
@@ -167,7 +166,7 @@ def _swap_stretches(
             return np.int64(0)
         t3 = near[t2, k, 0]
         t4 = next_of(tour, t3) if forward else prev_of(tour, t3)
-        if t3 == t1 or t4 == t1:
+        if t1 in (t3, t4):
             continue
         ring = tour[1, t3] - base if forward else base - tour[1, t3]
         if ring < 0:
@@ -190,7 +189,7 @@ def _swap_stretches(
                 closed = gain2 + leg_money(table, points, price, t5, t6)
                 closed -= leg_money(table, points, price, t6, t1)
                 if closed > 0:
-                    _open_ring(tour, log, after, t1, t2, t3, t4, t5, t6)
+                    _open_ring(tour, log, after, t1, t2, t3, t5, t6)
                     for node in (t1, t2, t3, t4, t5, t6):
                         push(queue, node)
                     return closed
@@ -199,16 +198,16 @@ def _swap_stretches(
 
 @kernel
 def _open_ring(
-    tour: Ints, log: Ints, after: Int, t1: Int, t2: Int, t3: Int, t4: Int, t5: Int, t6: Int
+    tour: Ints, log: Ints, after: Int, t1: Int, t2: Int, t3: Int, t5: Int, t6: Int
 ) -> None:
-    """Join t2-t3, t4-t5 and t6-t1, where t6 comes after or before t5 on the way t2..t3."""
+    """Join t2-t3, t4-t5 and t6-t1, t6 coming after or before t5 on the way t2..t3."""
     if after == 1:
-        exchange(tour, log, t1, t2, t3, t4)
-        exchange(tour, log, t1, t3, t6, t5)
-        exchange(tour, log, t3, t5, t2, t4)
+        exchange(tour, log, t1, t2, t3)
+        exchange(tour, log, t1, t3, t6)
+        exchange(tour, log, t3, t5, t2)
     else:
-        exchange(tour, log, t1, t2, t6, t5)
-        exchange(tour, log, t2, t5, t3, t4)
+        exchange(tour, log, t1, t2, t6)
+        exchange(tour, log, t2, t5, t3)
 
 
 @kernel
@@ -229,12 +228,12 @@ def descend(
 
     Ends early after ``looks`` nodes looked at, after ``steps`` steps made, or with a full log.
     """
-    total = np.int64(0)
+    total: Int = np.int64(0)
     room = log.shape[0] - LOG_RESERVE
     while looks > 0 and steps > 0 and waiting(queue) > 0 and log[0, 0] < room:
         t1 = pop(queue)
         looks -= 1
-        gain = np.int64(0)
+        gain: Int = np.int64(0)
         for way in range(2):
             t2 = next_of(tour, t1) if way == 0 else prev_of(tour, t1)
             gain = _try_chain(table, points, price, tour, log, near, chain, queue, t1, t2, depth)
@@ -270,15 +269,15 @@ def _double_bridge(
     c, d = tour[0, q % n], tour[0, (q + 1) % n]
     e, f = tour[0, r % n], tour[0, (r + 1) % n]
     g, h = tour[0, s % n], tour[0, (s + 1) % n]
-    added = np.int64(0)
+    added: Int = np.int64(0)
     for came, to in ((a, f), (g, d), (e, b), (c, h)):
         added += leg_money(table, points, price, came, to)
     for went, to in ((a, b), (c, d), (e, f), (g, h)):
         added -= leg_money(table, points, price, went, to)
-    exchange(tour, log, a, b, g, h)
-    exchange(tour, log, a, g, f, e)
-    exchange(tour, log, g, e, d, c)
-    exchange(tour, log, e, c, b, h)
+    exchange(tour, log, a, b, g)
+    exchange(tour, log, a, g, f)
+    exchange(tour, log, g, e, d)
+    exchange(tour, log, e, c, b)
     for node in (a, b, c, d, e, f, g, h):
         push(queue, node)
     return added

@@ -26,33 +26,23 @@ from georoute.kernels.arrays import Shifts, Travel, Visits
 from georoute.kernels.clock import clock_tour, tour_cost
 from georoute.kernels.node_queue import pop, push, waiting
 from georoute.kernels.random_stream import below
+from georoute.kernels.timed_moves import (
+    SHORT_CHAIN,
+    SWAP_TURN_FIRST,
+    SWAP_TURN_SECOND,
+    TURN,
+    added_travel,
+    double_bridge,
+    move_at_random,
+    nth_exchange,
+    refresh_timed,
+    write_exchanged,
+)
 
-__all__ = ["descend_timed", "kick_and_repair_timed", "price_timed", "refresh_timed"]
+__all__ = ["descend_timed", "kick_and_repair_timed", "price_timed"]
 
 Ints = NDArray[np.int64]
 Floats = NDArray[np.float64]
-
-SHORT_CHAIN = 3
-TURN = 0
-SWAP = 1
-SWAP_TURN_FIRST = 2
-SWAP_TURN_SECOND = 3
-LONGEST_SEGMENT = 30
-
-
-@kernel
-def refresh_timed(legs: Ints, seq: Ints, sums: Ints) -> None:
-    """Bring positions and sums up to date."""
-    seq[1, seq[0, 0]] = 0
-    sums[:, 0] = 0
-    for k in range(1, seq.shape[1]):
-        a = seq[0, k - 1]
-        b = seq[0, k]
-        seq[1, b] = k
-        sums[0, k] = sums[0, k - 1] + legs[0, a, b]
-        sums[1, k] = sums[1, k - 1] + legs[0, b, a]
-        sums[2, k] = sums[2, k - 1] + legs[1, a, b]
-        sums[3, k] = sums[3, k - 1] + legs[1, b, a]
 
 
 @kernel
@@ -82,43 +72,6 @@ def price_timed(
     worth[1] = tour_cost(shifts, shift, times)
     worth[2] = times.drive_ms
     worth[3] = times.length_mm
-
-
-@kernel
-def _added(legs: Ints, seq: Ints, sums: Ints, unit: Int, kind: Int, i: Int, j: Int, k: Int) -> Int:
-    """Return the travel added by an exchange, in ms (``unit`` 0) or mm (1)."""
-    a, b = seq[0, i - 1], seq[0, i]
-    c, d = seq[0, j], seq[0, j + 1]
-    along = 2 * unit
-    if kind == TURN:
-        added = legs[unit, a, c] + legs[unit, b, d] - legs[unit, a, b] - legs[unit, c, d]
-        added += sums[along + 1, j] - sums[along + 1, i]
-        return added - (sums[along, j] - sums[along, i])
-    e, f = seq[0, k], seq[0, k + 1]
-    added = -legs[unit, a, b] - legs[unit, c, d] - legs[unit, e, f]
-    if kind == SWAP:
-        return added + legs[unit, a, d] + legs[unit, e, b] + legs[unit, c, f]
-    if kind == SWAP_TURN_FIRST:
-        added += legs[unit, a, d] + legs[unit, e, c] + legs[unit, b, f]
-        added += sums[along + 1, j] - sums[along + 1, i]
-        return added - (sums[along, j] - sums[along, i])
-    added += legs[unit, a, e] + legs[unit, d, b] + legs[unit, c, f]
-    added += sums[along + 1, k] - sums[along + 1, j + 1]
-    return added - (sums[along, k] - sums[along, j + 1])
-
-
-@kernel
-def _exchanged(seq: Ints, trial: Ints, kind: Int, i: Int, j: Int, k: Int) -> None:
-    """Write the sequence after an exchange into row 0 of ``trial``."""
-    trial[0] = seq[0]
-    if kind == TURN:
-        trial[0, i : j + 1] = seq[0, i : j + 1][::-1]
-        return
-    size = k - j
-    first = seq[0, i : j + 1]
-    second = seq[0, j + 1 : k + 1]
-    trial[0, i : i + size] = second[::-1] if kind == SWAP_TURN_SECOND else second
-    trial[0, i + size : k + 1] = first[::-1] if kind == SWAP_TURN_FIRST else first
 
 
 @kernel
@@ -164,14 +117,14 @@ def _may_gain(
     k: Int,
 ) -> bool:
     """Tell whether travel, work and write-up alone leave room for a gain."""
-    drive = worth[2] + _added(legs, seq, sums, 0, kind, i, j, k)
+    drive = worth[2] + added_travel(legs, seq, sums, 0, kind, i, j, k)
     duration = drive + limits[0]
     excess = max(limits[1] + duration - limits[2], duration - limits[3], 0)
     if excess > worth[0]:
         return False
     if excess < worth[0]:
         return True
-    length = worth[3] + _added(legs, seq, sums, 1, kind, i, j, k)
+    length = worth[3] + added_travel(legs, seq, sums, 1, kind, i, j, k)
     return _money(tariff, duration, length) < worth[1]
 
 
@@ -195,7 +148,7 @@ def _try(
     k: Int,
 ) -> bool:
     """Make the exchange if the clock says it is better; tell whether it was made."""
-    _exchanged(seq, trial, kind, i, j, k)
+    write_exchanged(seq, trial, kind, i, j, k)
     late, finish = _earliest(legs, names, visits, limits, trial)
     if late + max(0, finish - limits[2]) > worth[0]:
         return False
@@ -207,35 +160,6 @@ def _try(
     seq[0] = trial[0]
     refresh_timed(legs, seq, sums)
     return True
-
-
-@kernel
-def _span(seq: Ints, role: Int, step: Int, p: Int) -> tuple[Int, Int, Int, Int]:
-    """Return the exchange number ``step`` around position p as kind-group, i, j, k; k 0: none.
-
-    Roles: p starts (0) or ends (1) a turned stretch; p starts a short first stretch (2), ends a
-    short second stretch (3), starts a short second one (4) or ends a short first one (5).
-    """
-    last = seq.shape[1] - 2
-    if role == 0:
-        j = p + 1 + step
-        return TURN, p, j, j if j <= last else 0
-    if role == 1:
-        i = 1 + step
-        return TURN, i, p, p if i < p else 0
-    size = step % SHORT_CHAIN
-    far = 1 + step // SHORT_CHAIN
-    if role == 2:
-        j = p + size
-        return SWAP, p, j, j + far if j + far <= last else 0
-    if role == 3:
-        j = p - size - 1
-        return SWAP, j - far + 1, j, p if j - far + 1 >= 1 else 0
-    if role == 4:
-        k = p + size
-        return SWAP, p - far, p - 1, k if k <= last and p - far >= 1 else 0
-    i = p - size
-    return SWAP, i, p, p + far if i >= 1 and p + far <= last else 0
 
 
 @kernel
@@ -260,7 +184,7 @@ def _improve(
     m = names.shape[0]
     for role in range(6):
         for step in range(m if role < 2 else SHORT_CHAIN * m):
-            group, i, j, k = _span(seq, role, step, p)
+            group, i, j, k = nth_exchange(seq, role, step, p)
             if k == 0:
                 continue
             for kind in range(group, 1 if group == TURN else 4):
@@ -314,7 +238,7 @@ def descend_timed(
     steps: Int,
 ) -> Int:
     """Make up to ``steps`` better exchanges; return the kind of the last, as ``_improve``."""
-    last = np.int64(0)
+    last: Int = np.int64(0)
     while steps > 0 and waiting(queue) > 0:
         node = pop(queue)
         made = _improve(
@@ -342,28 +266,6 @@ def descend_timed(
 
 
 @kernel
-def _double_bridge(seq: Ints, trial: Ints, queue: Ints, stream: NDArray[np.uint64]) -> None:
-    """Swap the first and third of three short stretches in a row."""
-    m = seq.shape[1] - 2
-    longest = max(1, min(LONGEST_SEGMENT, m // 3))
-    size1 = 1 + below(stream, longest)
-    size2 = 1 + below(stream, longest)
-    size3 = 1 + below(stream, longest)
-    first = 1 + below(stream, m - size1 - size2 - size3 + 1)
-    last = first + size1 + size2 + size3 - 1
-    trial[0] = seq[0]
-    seq[0, first : first + size3] = trial[0, first + size1 + size2 : last + 1]
-    middle = first + size3
-    seq[0, middle : middle + size2] = trial[0, first + size1 : first + size1 + size2]
-    seq[0, middle + size2 : last + 1] = trial[0, first : first + size1]
-    for at in (first - 1, first, middle - 1, middle, middle + size2 - 1, middle + size2, last):
-        if at >= 1:
-            push(queue, seq[0, at])
-    if last + 1 <= m:
-        push(queue, seq[0, last + 1])
-
-
-@kernel
 def kick_and_repair_timed(
     travel: Travel,
     visits: Visits,
@@ -386,6 +288,7 @@ def kick_and_repair_timed(
     best_worth: Ints,
     kicks: Int,
     heat: Float,
+    late_rate: Float,
     before: Int,
     total: Int,
     spent: Float,
@@ -395,10 +298,15 @@ def kick_and_repair_timed(
 
     ``kept`` and ``best`` (m + 2,) are the sequence to go back to and the best, with what they
     are worth. Dearer sequences are accepted as ``dearer_by`` says, ``before`` of ``total``
-    kicks having been made before this call; later ones never are. With ``stop_at_best`` 1 the call ends at a new best sequence.
+    kicks having been made before this call; for that, lateness and excess are priced at
+    ``late_rate`` micro-units per ms. With ``stop_at_best`` 1 the call ends at a new best one.
     """
     for done in range(kicks):
-        _double_bridge(seq, trial, queue, stream)
+        if below(stream, 2) == 0:
+            double_bridge(seq, trial, queue, stream)
+        else:
+            move_at_random(seq, trial, queue, stream)
+            move_at_random(seq, trial, queue, stream)
         refresh_timed(legs, seq, sums)
         price_timed(travel, visits, shifts, shift, names, seq, scratch, worth)
         descend_timed(
@@ -419,10 +327,9 @@ def kick_and_repair_timed(
             1 << 40,
         )
         limit = dearer_by(stream, heat, before + done, total, spent)
-        dearer = worth[1] - kept_worth[1]
-        if worth[0] > kept_worth[0] or (
-            worth[0] == kept_worth[0] and dearer > 0 and dearer > limit
-        ):
+        later = worth[0] - kept_worth[0]
+        dearer = worth[1] - kept_worth[1] + late_rate * later
+        if later >= 0 and dearer > 0 and dearer > limit:
             seq[0] = kept
             worth[:] = kept_worth
             refresh_timed(legs, seq, sums)

@@ -34,8 +34,9 @@ class Day:
     """The nodes of a day: node k is ``visits[k]``, the base nodes come last.
 
     ``symmetric``: a leg costs the same both ways; then a day with two ends has two base nodes,
-    joined by a link (``linked``). Otherwise there is one base node: legs from it are those of the start,
-    legs to it those of the end. ``x`` and ``y`` (float64, (n,)) place the nodes on a plane.
+    joined by a link (``linked``). Otherwise there is one base node: legs from it are those of
+    the start, legs to it those of the end. ``x`` and ``y`` (float64, (n,)) place the nodes on a
+    plane.
     """
 
     net: Net

@@ -65,7 +65,8 @@ def order_directed(
         cost -= gain
         if gain > 0:
             trail.note(KINDS[int(note[2])], tour[0], cost)
-    kept, best = tour[0].copy(), tour[0].copy()
+    kept: NDArray[np.int64] = tour[0].copy()
+    best: NDArray[np.int64] = tour[0].copy()
     costs = np.array([cost, cost], np.int64)
     while (kicks := budget.next_kicks(KICKS_A_CALL)) > 0:
         before = costs[1]

@@ -19,8 +19,8 @@ BLOCK = 512
 def nearest_by_table(table: NDArray[np.int64], count: int) -> NDArray[np.int64]:
     """Return the ``count`` cheapest nodes to go to from each node, cheapest first.
 
-    ``table`` is int64 (n, n); the result int64 (n, min(count, n - 1)). Ties go to the smaller
-    node number.
+    ``table`` is int64 (n, n); the result int64 (n, min(count, n - 1)). Among those found, ties
+    go to the smaller node number.
     """
     n = table.shape[0]
     count = min(count, n - 1)
@@ -48,12 +48,13 @@ def nearest_on_plane(
     n = x.shape[0]
     count = min(count, n - 1)
     points = np.column_stack((x, y))
-    _, found = cKDTree(points).query(points, k=count + 1)
+    found = np.asarray(cKDTree(points).query(points, k=count + 1)[1], np.int64)
     others = found != np.arange(n)[:, None]
     # Of more than count + 1 points on one spot, a point may not find itself: drop the last.
     full = others.all(axis=1)
     others[full, -1] = False
-    return found[others].reshape(n, count).astype(np.int64)
+    near: NDArray[np.int64] = found[others].reshape(n, count)
+    return near
 
 
 def candidate_legs(

@@ -39,7 +39,7 @@ def _nothing_spent() -> float:
     return 0.0
 
 
-def sequence_tour(
+def sequence_tour(  # noqa: PLR0913 - a budget is several plain values
     problem: Problem,
     shift: int,
     order: NDArray[np.int64],
@@ -91,7 +91,7 @@ def sequence_tour(
     return attempt.result()
 
 
-def sequence(
+def sequence(  # noqa: PLR0913 - as sequence_tour
     problem: Problem,
     solution: Solution,
     *,

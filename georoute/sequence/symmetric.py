@@ -134,15 +134,31 @@ class _Search:
 
     def _kick(self, budget: KickBudget, trail: Trail) -> NDArray[np.int64]:
         tour = self.tour
-        best = tour[0].copy()
+        best: NDArray[np.int64] = tour[0].copy()
         costs = np.array([self.cost, self.cost, 0], np.int64)
         queue = empty_queue(best.shape[0])
-        arrays = (tour, self.log, self.near, self.chain, queue, budget.stream, best, costs)
         while (kicks := budget.next_kicks(KICKS_A_CALL)) > 0:
             before = costs[1]
-            pace = (self.heat, budget.used, budget.kicks, budget.spent)
-            made = kick_and_repair(*self.net, *arrays, kicks, *pace, int(trail.kept))
+            made = kick_and_repair(
+                *self.net,
+                tour,
+                self.log,
+                self.near,
+                self.chain,
+                queue,
+                budget.stream,
+                best,
+                costs,
+                kicks,
+                self.heat,
+                budget.used,
+                budget.kicks,
+                budget.spent,
+                int(trail.kept),
+            )
             budget.used += int(made)
             if costs[1] < before:
                 trail.note("kick", self.names[tour[0]], int(costs[1]))
-        return tour[0] if costs[2] == 1 else best
+        if costs[2] == 1:
+            best[:] = tour[0]
+        return best

@@ -12,8 +12,8 @@ from georoute.kernels.timed import (
     descend_timed,
     kick_and_repair_timed,
     price_timed,
-    refresh_timed,
 )
+from georoute.kernels.timed_moves import refresh_timed
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -53,7 +53,7 @@ def order_timed(
     search = _Search(problem, shift, order)
     while waiting(search.queue) > 0 and not budget.stopped():
         steps = 1 if trail.kept else STEPS_A_CALL
-        kind = int(descend_timed(*search.clock, *search.arrays, steps))
+        kind = search.descend(steps)
         if kind > 0:
             trail.note(KINDS[kind], search.order, int(search.worth[1]))
     search.kick(budget, trail)
@@ -68,8 +68,8 @@ class _Search:
         self.clock = (problem.travel, problem.visits, problem.shifts, shift, self.names)
         m = order.shape[0]
         self.seq = np.array([[m, *range(m), m + 1]] * 2, np.int64)
-        legs = _legs(problem, shift, order)
-        sums = np.zeros((4, m + 2), np.int64)
+        self.legs = _legs(problem, shift, order)
+        self.sums = np.zeros((4, m + 2), np.int64)
         self.worth = np.zeros(4, np.int64)
         self.queue = new_queue(np.arange(m))
         shifts = problem.shifts
@@ -77,38 +77,70 @@ class _Search:
         ends = (shifts.open_ms[shift], shifts.close_ms[shift], shifts.limit_ms[shift])
         rates = (shifts.hour_rate[shift], shifts.overtime_rate[shift])
         tariff = (*rates, shifts.length_rate[shift], shifts.paid_ms[shift], shifts.day_cost[shift])
-        scratch = np.zeros((3, m), np.int64)
-        self.arrays = (
-            legs,
-            self.seq,
-            sums,
-            self.worth,
-            np.array([fixed, *ends], np.int64),
-            np.array(tariff, np.float64),
-            self.queue,
-            scratch,
-            self.seq.copy(),
-        )
-        refresh_timed(legs, self.seq, sums)
-        price_timed(*self.clock, self.seq, scratch, self.worth)
+        self.limits = np.array([fixed, *ends], np.int64)
+        self.tariff = np.array(tariff, np.float64)
+        self.scratch = np.zeros((3, m), np.int64)
+        self.trial = self.seq.copy()
+        refresh_timed(self.legs, self.seq, self.sums)
+        price_timed(*self.clock, self.seq, self.scratch, self.worth)
         travel_money = rates[0] * self.worth[2] + shifts.length_rate[shift] * self.worth[3]
         self.heat = HEAT * float(travel_money) / (m + 1)
+        self.late_rate = float(travel_money) / max(1.0, float(self.worth[2]))
 
     @property
     def order(self) -> NDArray[np.int64]:
         """The visits in sequence."""
-        return self.names[self.seq[0, 1:-1]]
+        order: NDArray[np.int64] = self.names[self.seq[0, 1:-1]]
+        return order
+
+    def descend(self, steps: int) -> int:
+        """Make up to ``steps`` better exchanges; return the kind of the last, 0 for none."""
+        made = descend_timed(
+            *self.clock,
+            self.legs,
+            self.seq,
+            self.sums,
+            self.worth,
+            self.limits,
+            self.tariff,
+            self.queue,
+            self.scratch,
+            self.trial,
+            steps,
+        )
+        return int(made)
 
     def kick(self, budget: KickBudget, trail: Trail) -> None:
         """Kick and repair until the budget is used; end at the best sequence."""
         kept, best = self.seq[0].copy(), self.seq[0].copy()
         kept_worth, best_worth = self.worth.copy(), self.worth.copy()
         self.queue[:] = empty_queue(self.names.shape[0])
-        state = (budget.stream, kept, kept_worth, best, best_worth)
         while (kicks := budget.next_kicks(KICKS_A_CALL)) > 0:
             before = best_worth.copy()
-            pace = (self.heat, budget.used, budget.kicks, budget.spent, int(trail.kept))
-            made = kick_and_repair_timed(*self.clock, *self.arrays, *state, kicks, *pace)
+            made = kick_and_repair_timed(
+                *self.clock,
+                self.legs,
+                self.seq,
+                self.sums,
+                self.worth,
+                self.limits,
+                self.tariff,
+                self.queue,
+                self.scratch,
+                self.trial,
+                budget.stream,
+                kept,
+                kept_worth,
+                best,
+                best_worth,
+                kicks,
+                self.heat,
+                self.late_rate,
+                budget.used,
+                budget.kicks,
+                budget.spent,
+                int(trail.kept),
+            )
             budget.used += int(made)
             if not np.array_equal(best_worth, before):
                 trail.note("kick", self.names[best[1:-1]], int(best_worth[1]))

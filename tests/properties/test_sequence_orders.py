@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from itertools import permutations
+from itertools import pairwise, permutations
 
 import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from numpy.typing import NDArray
 
 from georoute.kernels.clock import time_tour, tour_cost
 from georoute.problem import Problem
@@ -31,7 +32,7 @@ def _run(problem: Problem, *, seed: int = 1, kicks: int = FEW_KICKS) -> Sequence
     return sequence_tour(problem, 0, order, kicks=kicks, seed=seed, keep_log=True)
 
 
-def _clock_worth(problem: Problem, order: np.ndarray) -> tuple[int, int]:
+def _clock_worth(problem: Problem, order: NDArray[np.int64]) -> tuple[int, int]:
     times = time_tour(problem.travel, problem.visits, problem.shifts, 0, order)
     money = int(tour_cost(problem.shifts, 0, times))
     return int(times.late_ms) + int(times.excess_ms), money
@@ -73,8 +74,6 @@ def test_a_tour_stays_a_permutation_and_is_never_worse(problem: Problem) -> None
 
 @given(problem=days())
 def test_each_step_costs_what_a_plain_sum_of_its_legs_costs(problem: Problem) -> None:
-    problem_plain = problem
-    steps = _run(problem_plain).steps
     hour = problem.shifts._replace(overtime_rate=problem.shifts.hour_rate)
     problem_plain = Problem(
         travel=problem.travel,
@@ -88,15 +87,16 @@ def test_each_step_costs_what_a_plain_sum_of_its_legs_costs(problem: Problem) ->
     for step in steps:
         if problem.visit_count <= 3:
             work = int(problem.visits.work_ms.sum() * problem.shifts.hour_rate[0] + 0.5)
-        before, after = plain_money(problem, step.order_before), plain_money(
-            problem, step.order_after
+        before, after = (
+            plain_money(problem, step.order_before),
+            plain_money(problem, step.order_after),
         )
         # The exhaustive search of up to 3 visits prices the whole day and rounds once.
         slack = 4 if problem.visit_count <= 3 else 0
         assert abs(step.cost_before - work - before) <= slack
         assert abs(step.cost_after - work - after) <= slack
         assert step.kind == "start" or step.cost_after < step.cost_before
-    for earlier, later in zip(steps, steps[1:], strict=False):
+    for earlier, later in pairwise(steps):
         assert np.array_equal(earlier.order_after, later.order_before)
         assert earlier.cost_after == later.cost_before
 

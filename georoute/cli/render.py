@@ -22,6 +22,7 @@ if TYPE_CHECKING:
     from georoute.domain.findings import Finding
 
 __all__ = [
+    "clock_span",
     "count_findings",
     "hours",
     "kilometres",
@@ -36,14 +37,20 @@ __all__ = [
 ]
 
 
+CENTS_BELOW = 10_000
+WIDE = 200
+"""Columns of a table that goes to a file or a pipe, where nothing needs to be cut."""
+
+
 def stdout() -> Console:
-    """Return a console on standard output."""
-    return Console(highlight=False, soft_wrap=not sys.stdout.isatty())
+    """Return a console on standard output; long lines are left to the terminal or the reader."""
+    width = None if sys.stdout.isatty() else WIDE
+    return Console(highlight=False, soft_wrap=True, width=width)
 
 
 def stderr() -> Console:
     """Return a console on standard error."""
-    return Console(stderr=True, highlight=False)
+    return Console(stderr=True, highlight=False, soft_wrap=True)
 
 
 def hours(seconds: float) -> str:
@@ -54,21 +61,27 @@ def hours(seconds: float) -> str:
     return f"{sign}{whole} h {rest:02d} min"
 
 
+def clock_span(seconds: float) -> str:
+    """Write a duration as ``7:05`` (hours and minutes), for the narrow columns of a table."""
+    whole, rest = divmod(round(seconds / 60), 60)
+    return f"{whole}:{rest:02d}"
+
+
 def kilometres(metres: float) -> str:
     """Write a length in kilometres with one decimal."""
     return f"{metres / 1000:.1f} km"
 
 
 def money(amount: float, currency: str) -> str:
-    """Write an amount of money with its ISO 4217 code."""
-    return f"{amount:,.2f} {currency}"
+    """Write an amount of money with its ISO 4217 code; cents only where they tell something."""
+    return f"{amount:,.{0 if abs(amount) >= CENTS_BELOW else 2}f} {currency}"
 
 
 def new_table(*columns: str, right: Sequence[str] = ()) -> Table:
     """Return an empty table; the columns named in ``right`` hold figures."""
     table = Table(box=None, pad_edge=False, header_style="bold")
     for column in columns:
-        table.add_column(column, justify="right" if column in right else "left")
+        table.add_column(column, justify="right" if column in right else "left", no_wrap=True)
     return table
 
 

@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 from rich.text import Text
 
-from georoute.cli.render import hours, kilometres, money, new_table, stdout
+from georoute.cli.render import clock_span, hours, kilometres, money, new_table, stdout
 from georoute.domain.cautions import CAUTIONS
 
 if TYPE_CHECKING:
@@ -36,11 +36,11 @@ def capacity_line(capacity: Capacity) -> str:
 def _travel_line(plan: Plan) -> str:
     if not plan.travel.estimated:
         return f"Travel: {plan.travel.source}."
-    line = f"Travel: {plan.travel.source}; estimated, not measured along roads"
+    line = f"Travel is estimated, not measured along roads: {plan.travel.source}."
     low, high = plan.travel.low_factor, plan.travel.high_factor
     if (low, high) != (1.0, 1.0):
-        line += f" (a leg may take {low:.2f} to {high:.2f} times the time shown)"
-    return line + "."
+        line += f" A leg may take {low:.2f} to {high:.2f} times the time shown."
+    return line
 
 
 def _stage_line(plan: Plan) -> str:
@@ -73,20 +73,20 @@ def print_plan(plan: Plan) -> None:
     console.print(Text(plan.programme.title, style="bold"))
     console.print(Text(capacity_line(plan.capacity)))
     print_unplaced(plan.unplaced, most=WORST_SHOWN)
-    figures = ("stops", "drive", "work", "wait", "overtime", "km", "cost")
-    table = new_table("date", "inspector", "out-back", *figures, right=figures)
+    figures = ("stops", "drive", "work", "wait", "over", "km", "cost")
+    table = new_table("date", "out-back", *figures, "inspector", right=figures)
     for tour in plan.tours:
         table.add_row(
             f"{tour.day:%a} {tour.day.isoformat()}",
-            Text(names[tour.inspector_id]),
             f"{tour.depart:%H:%M}-{tour.back:%H:%M}",
             str(len(tour.stops)),
-            hours(tour.drive_s),
-            hours(tour.work_s),
-            hours(tour.wait_s),
-            hours(tour.overtime_s),
+            clock_span(tour.drive_s),
+            clock_span(tour.work_s),
+            clock_span(tour.wait_s),
+            clock_span(tour.overtime_s),
             f"{tour.dist_m / 1000:.1f}",
-            f"{tour.cost:,.2f}",
+            f"{tour.cost:,.0f}",
+            Text(names[tour.inspector_id]),
         )
     console.print(table)
     stops = sum(len(tour.stops) for tour in plan.tours)

@@ -37,7 +37,8 @@ def _fingerprint() -> str:
 
 def _keep_kernels() -> None:
     """Point the compiler's cache at a folder of the user's that belongs to these very sources."""
-    if numba.core.config.CACHE_DIR:
+    # The settings of the compiler are made at run time, from the environment.
+    if numba.core.config.CACHE_DIR:  # type: ignore[attr-defined]  # see above
         return
     chosen = os.environ.get("GEOROUTE_CACHE")
     home = Path(chosen) if chosen else platformdirs.user_cache_path("georoute", appauthor=False)
@@ -47,7 +48,7 @@ def _keep_kernels() -> None:
     except OSError:
         return  # a home that cannot be written to: the compiler looks for another place
     if os.access(folder, os.W_OK):
-        numba.core.config.CACHE_DIR = str(folder)
+        numba.core.config.CACHE_DIR = str(folder)  # type: ignore[attr-defined]  # see above
 
 
 _keep_kernels()

@@ -39,7 +39,7 @@ def _few_visits(visits: Visits, shifts: int) -> Visits:
 
 
 def _few_shifts(shifts: Shifts) -> Shifts:
-    return type(shifts)(*(array[:FEW_SHIFTS] for array in shifts))
+    return type(shifts)._make(array[:FEW_SHIFTS] for array in shifts)
 
 
 def warm_up(problem: Problem, effort: Effort) -> None:

@@ -338,8 +338,8 @@ def best_by_brute_force(problem: Problem) -> tuple[tuple[int, ...], int]:
             for s, members in enumerate(sets)
         ]
         money = sum(tours[s][members][0] for s, members in enumerate(sets) if members)
-        key = (slow_loss(problem, Solution(orders=tuple(orders))), money)
-        if best is None or key < best:
-            best = key
+        outcome = (slow_loss(problem, Solution(orders=tuple(orders))), money)
+        if best is None or outcome < best:
+            best = outcome
     assert best is not None
     return best

@@ -57,7 +57,7 @@ def read_move(kind: str, board: Board, step: Step, *, cost_before: int) -> Move:
     now_at: dict[int, int] = {}
     cost = cost_before
     for s in step.touched[: step.size[0]].tolist():
-        before = step.stops[s, : step.count[s]].copy()
+        before = step.stops[s, : step.sizes[s]].copy()
         after = board.stops[s, : board.tour[s, COUNT]].copy()
         tours.append((s, before, after))
         came_from.update(dict.fromkeys(before.tolist(), s))

@@ -8,9 +8,9 @@ import numpy as np
 
 from georoute.domain.run import never_stop, no_progress
 from georoute.improve.moves import Move, RelocateResult, read_move
-from georoute.improve.state import make_board, make_step, solution_of
+from georoute.improve.state import make_step
 from georoute.kernels.board import COUNT, FITS, INFEASIBLE, MONEY, RANK, WHERE, WINDOWED
-from georoute.kernels.day_step import begin_step, step_in, step_out, undo_step
+from georoute.kernels.day_step import begin_step, keep_step, step_in, step_out, undo_step
 from georoute.kernels.insertion import best_place
 from georoute.kernels.placement import (
     excess_visit,
@@ -22,6 +22,7 @@ from georoute.kernels.placement import (
 from georoute.kernels.random_stream import new_stream
 from georoute.kernels.rearrangement import MOST_TRIED, rearrange
 from georoute.kernels.relocation import close_day, relocate_one, swap_one
+from georoute.problem.board import make_board, solution_of
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -37,6 +38,8 @@ __all__ = ["relocate"]
 MICRO = 1_000_000
 WORK_PER_CALL = 60_000
 """Positions judged between two looks at the clock: some milliseconds."""
+WIDE_UP_TO = 600
+"""Up to so many visits every search for a place goes through all tours."""
 LOCAL_SCAN = 1_000
 """Positions judged for one visit where only nearby tours are looked at."""
 ABSENT_PER_ROUND = 20
@@ -61,8 +64,8 @@ class _Relocation:
         self.moves: list[Move] = []
         self.cost = int(self.board.tour[:, MONEY].sum())
         everywhere = problem.visit_count + problem.shift_count
-        wide = bool(self.step.wide[0])
-        positions = everywhere if wide else min(everywhere, LOCAL_SCAN + problem.shift_count)
+        self.wide = int(problem.visit_count <= WIDE_UP_TO)
+        positions = everywhere if self.wide else LOCAL_SCAN + problem.shift_count
         # In a tour with windows a position is judged by walking the stops after it.
         walk = 1 + int(self.board.tour[:, COUNT].max(initial=0)) // 8
         self.scan = positions * (walk if self.board.tour[:, WINDOWED].any() else 1)
@@ -83,7 +86,7 @@ class _Relocation:
         move = read_move(kind, self.board, self.step, cost_before=self.cost)
         self.cost = move.cost_after
         self.moves.append(move)
-        begin_step(self.step)
+        keep_step(self.step)
 
     def absent(self) -> NDArray[np.int64]:
         """Return the visits in no tour, those to be left out last first."""
@@ -166,18 +169,18 @@ class _Relocation:
 
     def descend(self, queue: NDArray[np.int64]) -> None:
         """Relocate and swap until neither pays for any visit."""
-        moving: tuple[tuple[str, Callable[..., tuple[Int, bool]], int], ...] = (
-            ("relocate", relocate_one, max(1, WORK_PER_CALL // self.scan)),
-            ("swap", swap_one, max(1, WORK_PER_CALL // 256)),
+        moving: tuple[tuple[str, Callable[..., tuple[Int, bool]], int, tuple[int, ...]], ...] = (
+            ("relocate", relocate_one, max(1, WORK_PER_CALL // self.scan), (self.wide,)),
+            ("swap", swap_one, max(1, WORK_PER_CALL // 256), ()),
         )
         quiet = False
         while not quiet:
             quiet = True
-            for kind, kernel, chunk in moving:
+            for kind, kernel, chunk, more in moving:
                 begin = 0
                 while begin < queue.shape[0]:
                     end = min(begin + chunk, queue.shape[0])
-                    nxt, moved = kernel(self.board, self.step, queue, begin, end)
+                    nxt, moved = kernel(self.board, self.step, queue, begin, end, *more)
                     begin = int(nxt)
                     if moved:
                         quiet = False
@@ -191,7 +194,7 @@ class _Relocation:
             # A day so full that emptying it would take long does not pay to close.
             busy = int(self.board.tour[s, COUNT])
             if busy > 0 and busy * self.scan <= 16 * WORK_PER_CALL:
-                if close_day(self.board, self.step, s, spare):
+                if close_day(self.board, self.step, s, spare, self.wide):
                     self.keep("close_day")
                 self.look()
 
@@ -208,6 +211,7 @@ class _Relocation:
                 bank,
                 stream,
                 min(tries, TRIES_PER_CALL),
+                self.wide,
             )
             tries -= int(done)
             if kept:

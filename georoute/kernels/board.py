@@ -137,7 +137,7 @@ def refresh(board: Board, s: Int) -> None:
     now = depart
     wait = late = drive = far = work = load = windowed = np.int64(0)
     slack = np.int64(FOREVER)
-    fits = True
+    fits: bool | np.bool_ = True
     for k in range(n):
         ahead[s, k, LEAVE] = now
         ahead[s, k, WAITED] = wait

@@ -31,7 +31,9 @@ __all__ = [
     "Step",
     "begin_step",
     "best_anywhere",
+    "has_place",
     "is_better",
+    "keep_step",
     "step_in",
     "step_out",
     "undo_step",
@@ -42,21 +44,26 @@ class Step(NamedTuple):
     """What has to be known to take a step back. All int64.
 
     ``touched`` (S,): shifts changed, the first ``size[0]`` of them; ``is_touched`` (S,) marks
-    them. ``stops`` (S, W), ``count`` (S,), ``money`` (S,): their rows before the step.
+    them. ``stops`` (S, W), ``sizes`` (S,), ``money`` (S,): their rows before the step.
     ``lost`` (C,): change of the loss of each class. ``seen`` (S,) and ``size[1]``: marks of the
-    shifts looked at in one search for a place. ``wide`` (1,): 1 where that search goes through
-    all tours, 0 where only through those of nearby visits and the empty ones.
+    shifts looked at in one search for a place. ``size[2]`` counts the steps kept; ``changed``
+    (S,): its value when each shift was last changed; ``stuck``, ``settled`` and ``unswapped``
+    (V,): its value when a visit was last found to have no place in another tour, no better
+    place, no better partner.
     """
 
     touched: NDArray[np.int64]
     size: NDArray[np.int64]
     is_touched: NDArray[np.int64]
     stops: NDArray[np.int64]
-    count: NDArray[np.int64]
+    sizes: NDArray[np.int64]
     money: NDArray[np.int64]
     lost: NDArray[np.int64]
     seen: NDArray[np.int64]
-    wide: NDArray[np.int64]
+    changed: NDArray[np.int64]
+    stuck: NDArray[np.int64]
+    settled: NDArray[np.int64]
+    unswapped: NDArray[np.int64]
 
 
 @kernel
@@ -69,6 +76,15 @@ def begin_step(step: Step) -> None:
 
 
 @kernel
+def keep_step(step: Step) -> None:
+    """Keep what the step did, and note which shifts it changed."""
+    step.size[2] += 1
+    for k in range(step.size[0]):
+        step.changed[step.touched[k]] = step.size[2]
+    begin_step(step)
+
+
+@kernel
 def _touch(board: Board, step: Step, s: Int) -> None:
     """Keep the row of shift ``s`` as it was, once a step."""
     if step.is_touched[s] == 0:
@@ -76,7 +92,7 @@ def _touch(board: Board, step: Step, s: Int) -> None:
         step.touched[step.size[0]] = s
         step.size[0] += 1
         n = board.tour[s, COUNT]
-        step.count[s] = n
+        step.sizes[s] = n
         step.money[s] = board.tour[s, MONEY]
         for k in range(n):
             step.stops[s, k] = board.stops[s, k]
@@ -113,8 +129,8 @@ def undo_step(board: Board, step: Step) -> None:
             board.spot[board.stops[s, i], WHERE] = -1
     for k in range(step.size[0]):
         s = step.touched[k]
-        board.tour[s, COUNT] = step.count[s]
-        for i in range(step.count[s]):
+        board.tour[s, COUNT] = step.sizes[s]
+        for i in range(step.sizes[s]):
             board.stops[s, i] = step.stops[s, i]
         refresh(board, s)
     begin_step(step)
@@ -131,51 +147,56 @@ def is_better(board: Board, step: Step) -> bool:
         rise += board.tour[s, MONEY] - step.money[s]
     for c in range(step.lost.shape[0]):
         if step.lost[c] != 0:
-            return step.lost[c] < 0
-    return rise < 0
+            return bool(step.lost[c] < 0)
+    return bool(rise < 0)
 
 
 @kernel
 def best_anywhere(
-    board: Board,
-    step: Step,
-    v: Int,
-    barred: Int,
-    ceiling: Int,
+    board: Board, step: Step, v: Int, barred: Int, since: Int, wide: Int, ceiling: Int
 ) -> tuple[Int, Int, Int]:
     """Return the least rise of money by visit ``v``, with its shift and position there.
 
-    Shift ``barred`` (-1: none) is left alone. Ties go to the first shift. ``INFEASIBLE``, -1, -1
-    where there is no place for a rise below ``ceiling``. Where ``step.wide`` is 0 and nearby
-    tours have no place, all are tried.
+    Shift ``barred`` (-1: none) is left alone, and so are shifts unchanged after ``since``
+    (-1: none). ``wide`` 0 looks at the tours of nearby visits and at empty shifts only. Ties go
+    to the first shift. ``INFEASIBLE``, -1, -1 where there is no place for a rise below
+    ``ceiling``.
     """
-    n_shifts = board.tour.shape[0]
-    best = np.int64(INFEASIBLE)
-    shift = np.int64(-1)
-    position = np.int64(-1)
-    bar = np.int64(ceiling)
-    if step.wide[0] == 0:
-        step.size[1] += 1
-        mark = step.size[1]
-        for k in range(board.near.shape[1]):
-            s = board.spot[board.near[v, k], WHERE]
-            if s >= 0 and step.seen[s] != mark:
-                step.seen[s] = mark
-        for s in range(n_shifts):
-            if (step.seen[s] == mark or board.tour[s, COUNT] == 0) and s != barred:
-                rise, p = best_place(board, s, v, bar)
-                if rise < bar:
-                    bar = rise
-                    best = rise
-                    shift = np.int64(s)
-                    position = p
-    if step.wide[0] == 1 or (shift < 0 and board.spot[v, WHERE] < 0 and ceiling >= INFEASIBLE):
-        for s in range(n_shifts):
-            if s != barred:
-                rise, p = best_place(board, s, v, bar)
-                if rise < bar:
-                    bar = rise
-                    best = rise
-                    shift = np.int64(s)
-                    position = p
+    best: Int = np.int64(INFEASIBLE)
+    shift: Int = np.int64(-1)
+    position: Int = np.int64(-1)
+    bar: Int = np.int64(ceiling)
+    spot, near, seen, changed = board.spot, board.near, step.seen, step.changed
+    step.size[1] += 1
+    mark = step.size[1]
+    for k in range(near.shape[1]):
+        s = spot[near[v, k], WHERE]
+        if s >= 0:
+            seen[s] = mark
+    for s in range(seen.shape[0]):
+        if s == barred or changed[s] <= since:
+            continue
+        if wide == 1 or seen[s] == mark or board.tour[s, COUNT] == 0:
+            rise, p = best_place(board, s, v, bar)
+            if rise < bar:
+                bar = rise
+                best = rise
+                shift = np.int64(s)
+                position = p
     return best, shift, position
+
+
+@kernel
+def has_place(board: Board, step: Step, v: Int, barred: Int) -> bool:
+    """Tell whether visit ``v`` fits in some tour as it is, other than that of ``barred``.
+
+    Tours in which it was found not to fit are looked at again only after they changed. For a
+    visit that is in a tour, ``barred`` must be that tour.
+    """
+    for s in range(step.changed.shape[0]):
+        if s != barred and step.changed[s] > step.stuck[v]:
+            _, p = best_place(board, s, v, np.int64(INFEASIBLE))
+            if p >= 0:
+                return True
+    step.stuck[v] = step.size[2]
+    return False

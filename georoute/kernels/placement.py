@@ -10,11 +10,9 @@ from georoute.kernels.arrays import UNREACHABLE
 from georoute.kernels.board import (
     CLOSE,
     COUNT,
+    DRIVE,
     END,
-    FIRST,
-    FOREVER,
     INFEASIBLE,
-    LAST,
     LEAVE,
     LIMIT,
     LOAD,
@@ -28,44 +26,27 @@ from georoute.kernels.board import (
     WAITED,
     WHERE,
     WORK,
+    WORKED,
     WRITE_UP,
     Board,
-    leg,
 )
 from georoute.kernels.day_step import (
     Step,
     begin_step,
     best_anywhere,
+    has_place,
     is_better,
     step_in,
     step_out,
     undo_step,
 )
 from georoute.kernels.insertion import best_place
+from georoute.kernels.shortage import closing, start_at, way
 
 __all__ = ["excess_visit", "fill_rises", "next_pick", "push_out", "trade_place"]
 
 EXACT_STOPS = 200
 """Up to so many stops, each removal is judged by the clock; beyond, by the time it frees."""
-
-
-@kernel
-def _way(board: Board, i: Int, j: Int) -> Int:
-    return leg(board.time, board.x, board.y, board.plane, 0, i, j)
-
-
-@kernel
-def _start(board: Board, v: Int, arrive: Int) -> tuple[Int, Int, Int]:
-    """Return start of work, room to the window's close, and lateness of visit ``v``."""
-    first = board.visit[v, FIRST]
-    last = board.visit[v, LAST]
-    if first == last:
-        return arrive, np.int64(FOREVER), np.int64(0)
-    for w in range(first, last):
-        if arrive <= board.closes[w]:
-            start = max(arrive, board.opens[w])
-            return start, board.closes[w] - start, np.int64(0)
-    return arrive, np.int64(0), arrive - board.closes[last - 1]
 
 
 @kernel
@@ -81,22 +62,22 @@ def _breach_without(board: Board, s: Int, p: Int) -> Float:
     for k in range(p):
         u = board.stops[s, k]
         start = board.ahead[s, k + 1, LEAVE] - board.visit[u, WORK]
-        late += max(np.int64(0), start - _closing(board, u))
+        late += max(np.int64(0), start - closing(board, u))
         here = board.visit[u, PLACE]
-    drive = np.int64(0)
+    drive: Int = np.int64(0)
     for k in range(p + 1, n):
         u = board.stops[s, k]
-        way = _way(board, here, board.visit[u, PLACE])
-        drive = max(drive, way)
-        start, room, lateness = _start(board, u, now + way)
-        wait += start - now - way
+        leg = way(board, here, board.visit[u, PLACE])
+        drive = max(drive, leg)
+        start, room, lateness = start_at(board, u, now + leg)
+        wait += start - now - leg
         late += lateness
         slack = min(slack, wait + room)
         now = start + board.visit[u, WORK]
         here = board.visit[u, PLACE]
-    way = _way(board, here, board.shift[s, END])
-    drive = max(drive, way)
-    finish = now + way + board.shift[s, WRITE_UP]
+    leg = way(board, here, board.shift[s, END])
+    drive = max(drive, leg)
+    finish = now + leg + board.shift[s, WRITE_UP]
     depart = board.shift[s, OPEN]
     if late == 0:
         depart += max(np.int64(0), min(slack, wait))
@@ -110,15 +91,6 @@ def _breach_without(board: Board, s: Int, p: Int) -> Float:
 
 
 @kernel
-def _closing(board: Board, v: Int) -> Int:
-    """Return when work at ``v`` may start at the latest."""
-    last = board.visit[v, LAST]
-    if board.visit[v, FIRST] == last:
-        return np.int64(FOREVER)
-    return board.closes[last - 1]
-
-
-@kernel
 def _time_freed(board: Board, s: Int, p: Int) -> Float:
     """Return the work and detour that stop ``p`` adds to tour ``s``, in ms."""
     v = board.stops[s, p]
@@ -126,7 +98,7 @@ def _time_freed(board: Board, s: Int, p: Int) -> Float:
     before = board.shift[s, START] if p == 0 else board.visit[board.stops[s, p - 1], PLACE]
     after = board.shift[s, END] if p == n - 1 else board.visit[board.stops[s, p + 1], PLACE]
     here = board.visit[v, PLACE]
-    detour = _way(board, before, here) + _way(board, here, after) - _way(board, before, after)
+    detour = way(board, before, here) + way(board, here, after) - way(board, before, after)
     return float(board.visit[v, WORK] + detour)
 
 
@@ -150,7 +122,7 @@ def excess_visit(board: Board, s: Int) -> Int:
         start = board.ahead[s, p + 1, LEAVE] - board.visit[v, WORK]
         if exact:
             breach = _breach_without(board, s, p)
-        elif start > _closing(board, v):
+        elif start > closing(board, v):
             breach = -np.inf  # too late itself: no way round it
         else:
             breach = -freed
@@ -236,22 +208,30 @@ def trade_place(
 
     Tries the stops ``begin .. end - 1`` of the tour one by one; returns whether that worked.
     """
+    begin_step(step)
     if not board.eligible[v, s]:
         return False
+    room = min(board.shift[s, LIMIT], board.shift[s, CLOSE] - board.shift[s, OPEN])
+    room -= board.tour[s, DRIVE] + board.tour[s, WORKED] + board.shift[s, WRITE_UP]
     for k in range(begin, min(end, board.tour[s, COUNT])):
         u = board.stops[s, k]
-        begin_step(step)
+        # A detour is seldom negative: without the time for the work itself, do not even try.
+        if _time_freed(board, s, k) + room < board.visit[v, WORK]:
+            continue
+        if not has_place(board, step, u, s):
+            continue
         step_out(board, step, u)
-        rise, p = best_place(board, s, v, np.int64(INFEASIBLE))
+        _, p = best_place(board, s, v, np.int64(INFEASIBLE))
         if p >= 0:
             step_in(board, step, s, p, v)
-            rise, t, q = best_anywhere(board, step, u, np.int64(-1), np.int64(INFEASIBLE))
-            if t >= 0 and rise < INFEASIBLE:
+            _, t, q = best_anywhere(
+                board, step, u, s, np.int64(-1), np.int64(1), np.int64(INFEASIBLE)
+            )
+            if t >= 0:
                 step_in(board, step, t, q, u)
                 if is_better(board, step):
                     return True
         undo_step(board, step)
-    begin_step(step)
     return False
 
 
@@ -286,7 +266,7 @@ def push_out(
     if not board.eligible[v, s]:
         return False
     gone = 0
-    rise, p = best_place(board, s, v, np.int64(INFEASIBLE))
+    _, p = best_place(board, s, v, np.int64(INFEASIBLE))
     while p < 0:
         u = _least_loss(board, s, v)
         if u < 0:
@@ -294,13 +274,18 @@ def push_out(
         step_out(board, step, u)
         spare[gone] = u
         gone += 1
-        rise, p = best_place(board, s, v, np.int64(INFEASIBLE))
+        _, p = best_place(board, s, v, np.int64(INFEASIBLE))
     if p >= 0:
         step_in(board, step, s, p, v)
         for i in range(gone - 1, -1, -1):
             u = spare[i]
-            rise, t, q = best_anywhere(board, step, u, np.int64(-1), np.int64(INFEASIBLE))
-            if t >= 0 and rise < INFEASIBLE:
+            t: Int = np.int64(s)
+            _, q = best_place(board, s, u, np.int64(INFEASIBLE))
+            if q < 0:
+                _, t, q = best_anywhere(
+                    board, step, u, s, step.stuck[u], np.int64(1), np.int64(INFEASIBLE)
+                )
+            if q >= 0:
                 step_in(board, step, t, q, u)
         if is_better(board, step):
             return True

@@ -71,13 +71,14 @@ def rearrange(
     bank: NDArray[np.int64],
     stream: NDArray[np.uint64],
     tries: Int,
+    wide: Int,
 ) -> tuple[Int, bool]:
     """Try up to ``tries`` times; stop after the first that pays.
 
     Around a visit drawn at random the nearest ones are taken out of their tours; with some of
     ``absent`` they are put in again one by one, each at its least rise of money. ``bank``
-    (int64, at least K + ``MOST_TRIED`` + 1) is scratch. Returns the tries made and whether the
-    last one paid.
+    (int64, at least K + ``MOST_TRIED`` + 1) is scratch; ``wide`` as in ``best_anywhere``. Returns
+    the tries made and whether the last one paid.
     """
     n_visits = board.visit.shape[0]
     width = board.near.shape[1]
@@ -101,7 +102,13 @@ def rearrange(
         _shuffle_by_rank(board, bank, n, stream)
         for i in range(n):
             v = bank[i]
-            _, s, p = best_anywhere(board, step, v, np.int64(-1), np.int64(INFEASIBLE))
+            _, s, p = best_anywhere(
+                board, step, v, np.int64(-1), np.int64(-1), wide, np.int64(INFEASIBLE)
+            )
+            if s < 0 and wide == 0:
+                _, s, p = best_anywhere(
+                    board, step, v, np.int64(-1), step.stuck[v], np.int64(1), np.int64(INFEASIBLE)
+                )
             if s >= 0:
                 step_in(board, step, s, p, v)
         if is_better(board, step):

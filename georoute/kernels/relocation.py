@@ -16,6 +16,7 @@ from georoute.kernels.day_step import (
     Step,
     begin_step,
     best_anywhere,
+    has_place,
     is_better,
     step_in,
     step_out,
@@ -33,26 +34,39 @@ def relocate_one(
     queue: NDArray[np.int64],
     begin: Int,
     end: Int,
+    wide: Int,
 ) -> tuple[Int, bool]:
     """Find the first visit of ``queue[begin:end]`` that a better place is found for, and move it.
 
-    A visit that is left out is put in wherever it fits at the least rise of money. Returns the
-    place in the queue to go on from, and whether a visit was moved.
+    A visit that is left out is put in wherever it fits at the least rise of money. ``wide`` as
+    in ``best_anywhere``. Returns the place in the queue to go on from, and whether a visit was
+    moved.
     """
     for i in range(begin, end):
         v = queue[i]
         begin_step(step)
         s = board.spot[v, WHERE]
-        ceiling = np.int64(INFEASIBLE)
-        if s >= 0:
-            step_out(board, step, v)
-            ceiling = step.money[s] - board.tour[s, MONEY]
-        rise, to, p = best_anywhere(board, step, v, np.int64(-1), ceiling)
-        if to >= 0 and rise < ceiling:
+        if s < 0:
+            if has_place(board, step, v, np.int64(-1)):
+                _, to, p = best_anywhere(
+                    board, step, v, np.int64(-1), np.int64(-1), np.int64(1), np.int64(INFEASIBLE)
+                )
+                step_in(board, step, to, p, v)
+                return np.int64(i + 1), True
+            continue
+        # In tours that have not changed since the last look there is still nothing better.
+        since = step.settled[v] if step.changed[s] <= step.settled[v] else np.int64(-1)
+        if since == step.size[2]:
+            continue
+        step_out(board, step, v)
+        ceiling = step.money[s] - board.tour[s, MONEY]
+        _, to, p = best_anywhere(board, step, v, np.int64(-1), since, wide, ceiling)
+        if to >= 0:
             step_in(board, step, to, p, v)
             if is_better(board, step):
                 return np.int64(i + 1), True
         undo_step(board, step)
+        step.settled[v] = step.size[2]
     return np.int64(end), False
 
 
@@ -90,10 +104,13 @@ def swap_one(
         s = board.spot[v, WHERE]
         if s < 0:
             continue
+        since = step.unswapped[v] if step.changed[s] <= step.unswapped[v] else np.int64(-1)
+        if since == step.size[2]:
+            continue
         for c in range(board.near.shape[1]):
             u = board.near[v, c]
             t = board.spot[u, WHERE]
-            if t < 0 or t == s or not _swap_pays(board, v, u):
+            if t < 0 or t == s or step.changed[t] <= since or not _swap_pays(board, v, u):
                 continue
             k = board.spot[v, AT]
             j = board.spot[u, AT]
@@ -105,6 +122,7 @@ def swap_one(
             if is_better(board, step):
                 return np.int64(i), True
             undo_step(board, step)
+        step.unswapped[v] = step.size[2]
     begin_step(step)
     return np.int64(end), False
 
@@ -115,10 +133,12 @@ def close_day(
     step: Step,
     s: Int,
     spare: NDArray[np.int64],
+    wide: Int,
 ) -> bool:
     """Empty shift ``s`` by giving its visits to others, if that pays; return whether it did.
 
-    The longest work goes first. ``spare`` (int64, at least as long as the tour) is scratch.
+    The longest work goes first. ``spare`` (int64, at least as long as the tour) is scratch;
+    ``wide`` as in ``best_anywhere``.
     """
     begin_step(step)
     n = board.tour[s, COUNT]
@@ -136,7 +156,7 @@ def close_day(
     left = step.money[s] if n > 0 else np.int64(0)
     for i in range(n):
         v = spare[i]
-        rise, to, p = best_anywhere(board, step, v, s, left)
+        rise, to, p = best_anywhere(board, step, v, s, np.int64(-1), wide, left)
         if to < 0:
             undo_step(board, step)
             return False

@@ -1,129 +1,102 @@
-"""The first split: clusters of about a day's work, each given to a shift of a near base."""
+"""Split the visits over the shifts: how many days, which visits together, on which shift."""
 
 from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
 import numpy as np
-from scipy.optimize import linear_sum_assignment
+from scipy.sparse import coo_array
+from scipy.sparse.csgraph import connected_components
 
-from georoute.kernels.arrays import UNREACHABLE
+from georoute.kernels.first_order import nearest_first
 from georoute.problem import Solution
-from georoute.split.clusters import balanced_clusters, tours_needed
+from georoute.problem.reasons import fits_alone
+from georoute.split.estimate import estimate
+from georoute.split.groups import Group, cluster_group
 
 if TYPE_CHECKING:
+    from collections.abc import Iterator
+
     from numpy.typing import NDArray
 
     from georoute.problem import Problem
 
 __all__ = ["split"]
 
-LATER_DAY_S = 1.0
-"""Of shifts that are otherwise alike the earlier one is taken: a second a day decides."""
+
+def _suitable(problem: Problem) -> NDArray[np.bool_]:
+    """Return where each visit may go (V, S): shifts it fits on its own, else any eligible one."""
+    alone = fits_alone(problem)
+    hopeless = ~alone.any(axis=1)
+    alone[hopeless] = problem.visits.eligible[hopeless]
+    return alone
 
 
-def _plane(problem: Problem, places: NDArray[np.int64]) -> NDArray[np.float64]:
-    return np.column_stack([problem.plane_x_m[places], problem.plane_y_m[places]])
+def _groups(suitable: NDArray[np.bool_]) -> Iterator[tuple[NDArray[np.int64], NDArray[np.int64]]]:
+    """Yield visits and shifts that have to do with each other, and with no others."""
+    patterns, pattern_of = np.unique(np.packbits(suitable, axis=1), axis=0, return_inverse=True)
+    pattern_of = pattern_of.reshape(-1)
+    n_patterns, n_shifts = patterns.shape[0], suitable.shape[1]
+    rows, columns = np.nonzero(np.unpackbits(patterns, axis=1, count=n_shifts))
+    size = n_patterns + n_shifts
+    graph = coo_array((np.ones(rows.size), (rows, columns + n_patterns)), shape=(size, size))
+    _, label = connected_components(graph, directed=False)
+    usable = suitable.any(axis=1)
+    for one in np.unique(label[n_patterns:]):
+        shifts = np.flatnonzero(label[n_patterns:] == one)
+        visits = np.flatnonzero(usable & (label[pattern_of] == one))
+        if visits.size > 0:
+            yield visits, shifts
 
 
-def speed_m_per_ms(problem: Problem) -> float:
-    """Return the median speed of travel between places, in plane metres per millisecond."""
-    count = problem.plane_x_m.shape[0]
-    i, j = np.arange(count), np.roll(np.arange(count), 1)
-    metres = np.hypot(
-        problem.plane_x_m[i] - problem.plane_x_m[j], problem.plane_y_m[i] - problem.plane_y_m[j]
-    )
-    if problem.travel.dense:
-        time_ms = problem.travel.time_ms[i, j].astype(np.float64)
-    else:
-        time_ms = metres * problem.travel.time_scale
-    usable = (time_ms > 0) & (time_ms < UNREACHABLE) & (metres > 0)
-    return float(np.median(metres[usable] / time_ms[usable])) if usable.any() else 0.01
-
-
-def _match(
-    problem: Problem,
-    centres: NDArray[np.float64],
-    labels: NDArray[np.int64],
-    visits: NDArray[np.int64],
-    speed: float,
-) -> NDArray[np.int64]:
-    """Return the shift of each cluster: the nearest base, allowed for its visits, early."""
-    shifts = problem.shifts
-    starts, ends = _plane(problem, shifts.start_place), _plane(problem, shifts.end_place)
-    out = np.linalg.norm(centres[:, None] - starts[None], axis=2)
-    back = np.linalg.norm(centres[:, None] - ends[None], axis=2)
-    price = (out + back) / speed + shifts.day[None] * LATER_DAY_S * 1_000
-    worst = float(price.max(initial=0.0)) + float(shifts.limit_ms.max(initial=0))
-    for cluster in range(centres.shape[0]):
-        members = visits[labels == cluster]
-        barred = ~problem.visits.eligible[members]
-        price[cluster] += barred.sum(axis=0) * worst
-    rows, columns = linear_sum_assignment(price)
-    shift_of = np.full(centres.shape[0], -1, np.int64)
-    shift_of[rows] = columns
-    return shift_of
-
-
-def _near_first(problem: Problem, shift: int, visits: NDArray[np.int64]) -> NDArray[np.int64]:
-    """Order visits by going from each to the nearest that is left, from the start on."""
-    spots = _plane(problem, problem.visits.place[visits])
-    here = _plane(problem, problem.shifts.start_place[shift : shift + 1])[0]
-    left = np.arange(visits.shape[0])
-    order = []
-    while left.shape[0]:
-        nearest = int(np.argmin(np.linalg.norm(spots[left] - here, axis=1)))
-        order.append(int(visits[left[nearest]]))
-        here = spots[left[nearest]]
-        left = np.delete(left, nearest)
-    return np.array(order, np.int64)
-
-
-def _settle(
-    problem: Problem,
-    visits: NDArray[np.int64],
-    wanted: NDArray[np.int64],
-    centres: NDArray[np.float64],
-    shift_of: NDArray[np.int64],
-) -> NDArray[np.int64]:
-    """Return a shift for each visit: the wanted one where allowed, else the nearest allowed."""
-    eligible = problem.visits.eligible
-    chosen = wanted.copy()
-    stray = np.flatnonzero(~eligible[visits, wanted])
-    centre_of = {int(s): centres[c] for c, s in enumerate(shift_of) if s >= 0}
-    for k in stray:
-        spot = _plane(problem, problem.visits.place[visits[k : k + 1]])[0]
-        allowed = np.flatnonzero(eligible[visits[k]])
-        used = [int(s) for s in allowed if int(s) in centre_of]
-        if used:
-            chosen[k] = min(
-                used, key=lambda s, spot=spot: float(np.linalg.norm(centre_of[s] - spot))
+def _orders(problem: Problem, shift_of: NDArray[np.int64]) -> Solution:
+    by_shift = np.argsort(shift_of, kind="stable").astype(np.int64)
+    bounds = np.searchsorted(shift_of[by_shift], np.arange(problem.shift_count + 1))
+    starts = problem.shifts.start_place
+    return Solution(
+        orders=tuple(
+            nearest_first(
+                problem.travel,
+                problem.visits.place,
+                starts[s],
+                by_shift[bounds[s] : bounds[s + 1]],
             )
-        else:
-            chosen[k] = allowed[0]
-    return chosen
+            for s in range(problem.shift_count)
+        )
+    )
 
 
 def split(problem: Problem, *, seed: int) -> Solution:
-    """Give every visit that any shift may take to exactly one shift.
+    """Split the visits over the shifts by clusters on the plane, balanced by work time.
 
-    The number of days follows from the work and an estimate of travel; clusters on the plane are
-    balanced by time and matched with shifts by the way from and to the base. Limits of a shift
-    may be broken: moving visits between days comes later. The orders go from stop to nearest
-    stop.
+    As many days are opened as the work, the estimated travel and the write-up need; their
+    clusters are matched to shifts of near bases, earlier dates first where nothing else
+    differs. Each order is that of the nearest neighbour from the base.
+
+    Parameters
+    ----------
+    problem
+        The array problem.
+    seed
+        Same problem and seed: same split, bit by bit.
+
+    Returns
+    -------
+    Solution
+        Every visit that is eligible for some shift is in exactly one order. Limits of shifts
+        may be exceeded; eligibility is not.
     """
-    empty = np.empty(0, np.int64)
-    orders = [empty for _ in range(problem.shift_count)]
-    visits = np.flatnonzero(problem.visits.eligible.any(axis=1))
-    if visits.shape[0] == 0:
-        return Solution(orders=tuple(orders))
-    speed = speed_m_per_ms(problem)
-    spots = _plane(problem, problem.visits.place[visits])
-    work_ms = problem.visits.work_ms[visits].astype(np.float64)
-    count = tours_needed(problem, spots, work_ms, speed)
-    centres, labels = balanced_clusters(spots, work_ms, count=count, seed=seed)
-    shift_of = _match(problem, centres, labels, visits, speed)
-    chosen = _settle(problem, visits, shift_of[labels], centres, shift_of)
-    for shift in np.unique(chosen):
-        orders[shift] = _near_first(problem, int(shift), visits[chosen == shift])
-    return Solution(orders=tuple(orders))
+    shift_of = np.full(problem.visit_count, -1, np.int64)
+    if problem.shift_count > 0 and problem.visit_count > 0:
+        suitable = _suitable(problem)
+        figures = estimate(problem)
+        for visits, shifts in _groups(suitable):
+            group = Group(
+                problem=problem,
+                figures=figures,
+                visits=visits,
+                shifts=shifts,
+                suitable=suitable[np.ix_(visits, shifts)],
+            )
+            shift_of[visits] = shifts[cluster_group(group, seed=seed)]
+    return _orders(problem, shift_of)

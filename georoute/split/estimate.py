@@ -50,10 +50,10 @@ def _round_trips(problem: Problem) -> tuple[NDArray[np.int64], NDArray[np.int64]
     pairs, pair_of = np.unique(ends, axis=0, return_inverse=True)
     trips = np.zeros((pairs.shape[0], problem.visit_count), np.int64)
     back = np.zeros(problem.visit_count, np.int64)
-    for trip, (start, end) in zip(trips, pairs, strict=True):
-        direct_ways(problem.travel, start, problem.visits.place, 1, trip)
+    for row, (start, end) in enumerate(pairs):
+        direct_ways(problem.travel, start, problem.visits.place, 1, trips[row])
         direct_ways(problem.travel, end, problem.visits.place, 0, back)
-        trip += back
+        trips[row] += back
     return np.minimum(trips, UNREACHABLE), pair_of.reshape(-1).astype(np.int64)
 
 
@@ -66,8 +66,10 @@ def estimate(problem: Problem) -> Estimate:
     gap_m = np.zeros(problem.visit_count)
     if count > 0:
         points = np.column_stack([x_m, y_m])
-        gaps, near = cKDTree(points).query(points, k=count + 1)
-        shortest_legs(problem.travel, place, near[:, 1:].astype(np.int64), legs_ms)
+        found = cKDTree(points).query(points, k=count + 1)
+        gaps, near = np.asarray(found[0], np.float64), np.asarray(found[1], np.int64)
+        # The first one found is the visit itself, or another at the very same spot.
+        shortest_legs(problem.travel, place, near, legs_ms)
         gap_m = gaps[:, 1]
     trips, pair_of = _round_trips(problem)
     apart = float(gap_m.sum())

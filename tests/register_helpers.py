@@ -43,6 +43,11 @@ OPTIONAL = (
 WORDS = ("Caleta", "Quay, north", 'Gate "B"', "Ñandú", "Œuvre", "Łódź", "O'Hara", "a;b", "<b>", "")
 
 
+def seeded(seed: int | str) -> random.Random:
+    """Return a stream of random numbers that is the same in every run."""
+    return random.Random(seed)  # noqa: S311 - repeatable on purpose
+
+
 def random_id(rng: random.Random, k: int) -> str:
     """Make an id that stays text: leading zeros, dashes, other scripts."""
     return rng.choice((f"{k:05}", f"S-{k}", f"Ж{k}", f"a/{k} b", f"{k}.0", f"1e{k}", f"={k}"))
@@ -117,7 +122,7 @@ def write_csv(path: Path, rows: Sequence[Row]) -> Path:
     return path
 
 
-def typed(column: str, cell: str) -> object:
+def typed(column: str, cell: str) -> float | date | str | None:
     """Return a cell as a spreadsheet holds it: a number, a date, or text."""
     if cell and column in NUMBERS:
         return float(cell)
@@ -184,25 +189,23 @@ class Planted:
 
 def plain_rows(rng: random.Random, count: int = 40) -> list[Row]:
     """Make rows with every column a fault may be planted in, and nothing unusual."""
-    rows = []
-    for k in range(count):
-        rows.append(
-            {
-                "site_id": f"S{k:03}",
-                "name": f"Gate {k}",
-                "lat": f"{-29.9 + rng.uniform(-0.05, 0.05):.6f}",
-                "lon": f"{-71.25 + rng.uniform(-0.05, 0.05):.6f}",
-                "work_min": "30",
-                "access_min": "5",
-                "earliest_date": "2027-03-01",
-                "due_date": "2027-03-10",
-                "latest_date": "2027-03-20",
-                "load": "1",
-                "worth": "100",
-                "must": "no",
-            }
-        )
-    return rows
+    return [
+        {
+            "site_id": f"S{k:03}",
+            "name": f"Gate {k}",
+            "lat": f"{-29.9 + rng.uniform(-0.05, 0.05):.6f}",
+            "lon": f"{-71.25 + rng.uniform(-0.05, 0.05):.6f}",
+            "work_min": "30",
+            "access_min": "5",
+            "earliest_date": "2027-03-01",
+            "due_date": "2027-03-10",
+            "latest_date": "2027-03-20",
+            "load": "1",
+            "worth": "100",
+            "must": "no",
+        }
+        for k in range(count)
+    ]
 
 
 def swap(row: Row) -> None:
@@ -214,7 +217,7 @@ def put(**cells: str) -> Callable[[Row], None]:
     return lambda row: row.update(cells)
 
 
-SWAPPED, BOTH = "lat, lon", "lat, lon"
+BOTH = "lat, lon"
 
 # code, column reported, and the edits that plant it: three at least, each in a row of its own.
 ROW_FAULTS: dict[str, tuple[str, str, tuple[Callable[[Row], None], ...]]] = {
@@ -257,7 +260,7 @@ ROW_FAULTS: dict[str, tuple[str, str, tuple[Callable[[Row], None], ...]]] = {
         "lon",
         (put(lon="-712.5"), put(lon="-71251234"), put(lon="180.5")),
     ),
-    "swapped axes": ("swapped_axes", SWAPPED, (swap, swap, swap)),
+    "swapped axes": ("swapped_axes", BOTH, (swap, swap, swap)),
     "far outlier": (
         "far_outlier",
         BOTH,

@@ -8,6 +8,7 @@ from datetime import time
 from typing import TYPE_CHECKING
 
 from georoute.register.codes import Code, nearest_words
+from georoute.register.schema import ShiftKeys
 from georoute.register.schema_faults import key_path
 
 if TYPE_CHECKING:
@@ -171,7 +172,7 @@ def check_inspectors(parts: Parts, notebook: Notebook) -> None:
                     value=written,
                     subject=inspector.inspector_id,
                 )
-        if inspector.start_base is None and len(parts.base_ids) > 1:
+        if not parts.writes(*at, "start_base") and len(parts.base_ids) > 1:
             known = ", ".join(f"`{word}`" for word in parts.base_ids)
             notebook.add(
                 Code.UNKNOWN_BASE,
@@ -190,7 +191,7 @@ def _check_shift(
     subject = inspector.inspector_id
     if shift is None:
         for key in ("shift_start", "shift_end"):
-            if getattr(inspector, key) is None and getattr(parts.shift, key) is None:
+            if not parts.writes(*at, key) and not parts.writes("shift", key):
                 notebook.add(
                     Code.MISSING_KEY,
                     f"`{key}` is stated neither here nor in [shift]",
@@ -213,7 +214,13 @@ def _check_shift(
             subject=subject,
         )
         return
-    _check_lengths(notebook, shift, place, subject)
+    unread = any(
+        parts.writes(*where, key) and getattr(section, key) is None
+        for where, section in ((at, inspector), (("shift",), parts.shift))
+        for key in ShiftKeys.model_fields
+    )
+    if not unread:  # else the lengths are not what is meant
+        _check_lengths(notebook, shift, place, subject)
 
 
 def _check_lengths(

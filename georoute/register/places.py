@@ -42,6 +42,9 @@ _NEAR_M = 50.0
 _FEWEST = 4
 """With fewer places there is no rest to judge one against."""
 
+_MANY = 10
+"""With fewer places the MAD is hardly known, and an outlier has to be clearly one."""
+
 _FEW = 0.1
 """A larger share of far sites than this is a second area, reported once, not site by site."""
 
@@ -217,6 +220,8 @@ class _Judge:
         lon, lat = self.lon[where], self.lat[where]
         distances = _distances(_centre(lon, lat), lon, lat)
         reach = _reach(distances)
+        if len(where) < _MANY:
+            reach = max(reach, _CLEARLY * float(np.median(distances)))
         far = np.flatnonzero(distances > reach)
         remedy = "look whether the coordinates are right; if they are, nothing to do"
         if len(far) > max(1, int(_FEW * len(where))) and len(far) > _FEWEST - 1:

@@ -173,7 +173,7 @@ def _check_choices(parts: Parts, notebook: Notebook) -> None:
             at=("travel", "method"),
             value=parts.travel.method,
         )
-    if parts.travel.method == TravelMethod.TABLE.value and parts.travel.table is None:
+    if parts.travel.method == TravelMethod.TABLE.value and not parts.writes("travel", "table"):
         notebook.add(
             Code.MISSING_TABLE,
             "the travel method is `table` and no table is named",

@@ -139,7 +139,9 @@ def _parse(data: bytes) -> tuple[dict[str, object], str] | Finding:
     except ValueError as error:  # a number too long to read is one as well
         reason = str(error)
         place = _PLACE.search(reason)
-        return _syntax(_PLACE.sub("", reason).strip(), int(place[1]) if place else None)
+        last = text.rstrip("\n").count("\n") + 1
+        where = int(place[1]) if place else last if "end of document" in reason else None
+        return _syntax(_PLACE.sub("", reason).strip(), where)
 
 
 def _syntax(reason: str, line: int | None) -> Finding:

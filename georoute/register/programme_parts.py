@@ -55,6 +55,19 @@ class Parts:
     tariff: TariffSection | None
     travel: TravelSection
     search: SearchSection
+    raw: Mapping[str, object]
+
+    def writes(self, *path: str | int) -> bool:
+        """Tell whether the file writes a key at all, rightly or wrongly."""
+        here: object = self.raw
+        for part in path:
+            if isinstance(here, dict):
+                here = here.get(part)
+            elif isinstance(here, list) and isinstance(part, int) and part < len(here):
+                here = here[part]
+            else:
+                return False
+        return here is not None
 
 
 class Notebook:
@@ -146,4 +159,5 @@ def parts_of(raw: Mapping[str, object]) -> Parts:
         tariff=lenient(TariffSection, raw.get("tariff")),
         travel=_optional(TravelSection, raw, "travel"),
         search=_optional(SearchSection, raw, "search"),
+        raw=raw,
     )

@@ -57,7 +57,7 @@ def _unusable(cell: Unusable) -> Refusal:
     )
 
 
-def read_number(cell: Cell, *, decimal_comma: bool) -> float | Refusal:  # noqa: PLR0911 - as many
+def read_number(cell: Cell, *, decimal_comma: bool) -> float | Refusal:  # noqa: PLR0911 - exits by kind
     """Read a number from a cell that is not blank.
 
     Parameters
@@ -77,11 +77,11 @@ def read_number(cell: Cell, *, decimal_comma: bool) -> float | Refusal:  # noqa:
     if isinstance(cell, (int, float)) and not isinstance(cell, bool):
         return _finite(cell)
     text = cell_text(cell).strip().replace("\u2212", "-")  # the typographic minus sign
-    if text.casefold() in _NOT_FINITE:
-        return _not_finite()
-    has_comma = _COMMA_NUMBER.fullmatch(text) is not None
     has_point = _NUMBER.fullmatch(text) is not None
-    if decimal_comma and has_point and "." in text:
+    if has_point and not (decimal_comma and "." in text):
+        return _finite(float(text))
+    has_comma = _COMMA_NUMBER.fullmatch(text) is not None
+    if has_point:
         return Refusal(
             code=Code.DECIMAL_POINT,
             message="the number has a decimal point; the file uses decimal commas elsewhere",
@@ -93,9 +93,9 @@ def read_number(cell: Cell, *, decimal_comma: bool) -> float | Refusal:  # noqa:
             message="the number has a comma; the file uses decimal points elsewhere",
             remedy=f"write `{text.replace(',', '.')}` if the comma marks decimals",
         )
-    if has_comma or has_point:
+    if has_comma:
         return _finite(float(text.replace(",", ".")))
-    return _no_number(text)
+    return _not_finite() if text.casefold() in _NOT_FINITE else _no_number(text)
 
 
 def _finite(number: float) -> float | Refusal:

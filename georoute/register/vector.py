@@ -81,7 +81,7 @@ def read_vector(path: Path, *, layer: str | None) -> RawTable:
     notes += _remarks([str(remark.message) for remark in remarks])
     headers = tuple(str(field) for field in meta["fields"])
     cells = _cell_columns(columns, meta)
-    count = len(columns[0]) if len(columns) else len(shapes or ())
+    count = max((len(column) for column in cells), default=0 if shapes is None else len(shapes))
     rows = [
         RawRow(number=k + 1, cells=tuple(column[k] for column in cells), **_place(shapes, k))
         for k in range(count)

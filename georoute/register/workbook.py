@@ -55,8 +55,6 @@ _DAMAGED = (
 )
 
 _FORMULA = re.compile(rb"<(?:\w+:)?f[\s>/]")
-_WIDEST = 16_384
-"""Columns an .xlsx sheet can have (ECMA-376)."""
 
 
 def read_workbook(data: bytes, *, sheet: str | None) -> RawTable:
@@ -149,7 +147,7 @@ def _iterate(book: Workbook, name: str) -> Iterator[tuple[Any, ...]]:
     sheet.reset_dimensions()  # some writers state a wrong extent
     with warnings.catch_warnings():
         warnings.simplefilter("ignore")  # as in _open: cells are read only now
-        yield from sheet.iter_rows(max_col=_WIDEST)
+        yield from sheet.iter_rows()
 
 
 def _value_rows(book: Workbook, name: str) -> Iterator[tuple[Cell, ...]]:

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import random
 from pathlib import Path
 
 import pytest
@@ -20,7 +19,7 @@ def places(findings: tuple[Finding, ...]) -> set[tuple[int | None, str, str]]:
 @pytest.mark.parametrize("kind", helpers.ROW_FAULTS)
 @pytest.mark.parametrize("seed", [1, 2, 3])
 def test_planted_faults_are_found_and_nothing_else(kind: str, seed: int, tmp_path: Path) -> None:
-    rng = random.Random(f"{kind}{seed}")
+    rng = helpers.seeded(f"{kind}{seed}")
     rows = helpers.plain_rows(rng)
     planted = helpers.plant(kind, rows, rng)
     findings = check_register(helpers.write_csv(tmp_path / "r.csv", rows))
@@ -32,7 +31,7 @@ def test_planted_faults_are_found_and_nothing_else(kind: str, seed: int, tmp_pat
 
 
 def test_forty_bad_rows_make_one_report_of_forty_findings(tmp_path: Path) -> None:
-    rng = random.Random(40)
+    rng = helpers.seeded(40)
     rows = helpers.plain_rows(rng, 60)
     for k in range(40):
         rows[k]["work_min"] = "soon"
@@ -43,7 +42,7 @@ def test_forty_bad_rows_make_one_report_of_forty_findings(tmp_path: Path) -> Non
 
 
 def test_faults_of_several_kinds_are_reported_together_and_in_order(tmp_path: Path) -> None:
-    rng = random.Random(5)
+    rng = helpers.seeded(5)
     rows = helpers.plain_rows(rng)
     kinds = ("missing id", "zero", "ambiguous date", "negative load", "swapped axes")
     planted = []
@@ -57,7 +56,7 @@ def test_faults_of_several_kinds_are_reported_together_and_in_order(tmp_path: Pa
 
 
 def test_duplicate_ids_are_found_in_the_second_row(tmp_path: Path) -> None:
-    rows = helpers.plain_rows(random.Random(1))
+    rows = helpers.plain_rows(helpers.seeded(1))
     for k in (10, 20, 30):
         rows[k]["site_id"] = rows[k - 5]["site_id"]
     findings = check_register(helpers.write_csv(tmp_path / "r.csv", rows))
@@ -66,14 +65,14 @@ def test_duplicate_ids_are_found_in_the_second_row(tmp_path: Path) -> None:
 
 
 def test_ids_that_differ_in_capitals_or_blanks_are_a_warning(tmp_path: Path) -> None:
-    rows = helpers.plain_rows(random.Random(1))
+    rows = helpers.plain_rows(helpers.seeded(1))
     rows[10]["site_id"], rows[20]["site_id"], rows[30]["site_id"] = "s000", "S 001", "s0 02"
     findings = check_register(helpers.write_csv(tmp_path / "r.csv", rows))
     assert places(findings) == {(k, "site_id", "similar_id") for k in (12, 22, 32)}
 
 
 def test_visits_that_would_have_one_name_are_refused(tmp_path: Path) -> None:
-    rows = [{**row, "task": "look"} for row in helpers.plain_rows(random.Random(1))]
+    rows = [{**row, "task": "look"} for row in helpers.plain_rows(helpers.seeded(1))]
     for k, (first, second) in enumerate([("a|b", "a"), ("c|d", "c"), ("|", "")]):
         rows[2 * k] |= {"site_id": first or "-", "task": "look"}
         rows[2 * k + 1] |= {"site_id": second or "x", "task": f"{first[2:]}|look"}
@@ -84,7 +83,7 @@ def test_visits_that_would_have_one_name_are_refused(tmp_path: Path) -> None:
 
 
 def test_the_same_place_twice_is_a_warning(tmp_path: Path) -> None:
-    rows = helpers.plain_rows(random.Random(1))
+    rows = helpers.plain_rows(helpers.seeded(1))
     for k in (10, 20, 30):
         rows[k] |= {"lat": rows[0]["lat"], "lon": rows[0]["lon"] + "0"}
     register, findings = read_register(helpers.write_csv(tmp_path / "r.csv", rows))
@@ -96,7 +95,7 @@ def test_the_same_place_twice_is_a_warning(tmp_path: Path) -> None:
 def test_swapped_rows_are_told_from_good_ones_up_to_nearly_half(
     share: float, tmp_path: Path
 ) -> None:
-    rows = helpers.plain_rows(random.Random(3), 100)
+    rows = helpers.plain_rows(helpers.seeded(3), 100)
     for row in rows[: int(100 * share)]:
         helpers.swap(row)
     findings = check_register(helpers.write_csv(tmp_path / "r.csv", rows))
@@ -106,7 +105,7 @@ def test_swapped_rows_are_told_from_good_ones_up_to_nearly_half(
 
 
 def test_a_second_area_is_one_warning_not_a_list_of_outliers(tmp_path: Path) -> None:
-    rows = helpers.plain_rows(random.Random(3), 100)
+    rows = helpers.plain_rows(helpers.seeded(3), 100)
     for row in rows[:20]:
         row["lat"] = f"{float(row['lat']) - 3:.6f}"
     (finding,) = check_register(helpers.write_csv(tmp_path / "r.csv", rows))

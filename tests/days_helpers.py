@@ -232,7 +232,7 @@ def _latest_departure(problem: Problem, shift: int, order: Sequence[int]) -> int
     """Return the latest departure with the same return and windows, by bisection."""
     earliest = int(problem.shifts.open_ms[shift])
     back, used, late, _ = _pass(problem, shift, order, earliest)
-    if late:
+    if late or all(w < 0 for w in used):
         return earliest
     low, high = earliest, back
     while low < high:

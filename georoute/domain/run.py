@@ -29,14 +29,22 @@ class Effort:
     kicks_per_stop: int
     relocation_rounds: int
     seconds: float | None = None
+    improve_steps: int = 0
 
 
 EFFORTS: dict[str, Effort] = {
     effort.name: effort
     for effort in (
-        Effort(name=EffortName.QUICK, kicks_per_stop=20, relocation_rounds=20),
-        Effort(name=EffortName.NORMAL, kicks_per_stop=200, relocation_rounds=100),
-        Effort(name=EffortName.THOROUGH, kicks_per_stop=5_000, relocation_rounds=1_000),
+        Effort(name=EffortName.QUICK, kicks_per_stop=20, relocation_rounds=20, improve_steps=60),
+        Effort(
+            name=EffortName.NORMAL, kicks_per_stop=200, relocation_rounds=100, improve_steps=600
+        ),
+        Effort(
+            name=EffortName.THOROUGH,
+            kicks_per_stop=5_000,
+            relocation_rounds=1_000,
+            improve_steps=20_000,
+        ),
     )
 }
 

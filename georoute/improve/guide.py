@@ -8,14 +8,14 @@ import numpy as np
 
 from georoute.kernels.annealing import Guide
 from georoute.kernels.arrays import MUST, UNREACHABLE
-from georoute.kernels.slack_state import Legs
+from georoute.kernels.slack_state import Facts
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from georoute.problem import Problem
 
-__all__ = ["guide_of", "legs_of", "ranked_worth", "widest_tour"]
+__all__ = ["facts_of", "guide_of", "ranked_worth", "widest_tour"]
 
 NO_LEG = 1 << 52
 """Money of a leg that does not exist: dearer than any tour, and safe to add up."""
@@ -25,8 +25,8 @@ WINDOW_WEIGHTS = {"window_length": 2.0, "opens": 2.0, "closes": 2.0}
 """Orders of insertion and how often they are drawn: the weights of the paper."""
 
 
-def legs_of(problem: Problem) -> Legs:
-    """Return the money of every leg for each class of rates."""
+def _fares(problem: Problem) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
+    """Return the money of every leg for each class of rates, and the class of each shift."""
     shifts, travel = problem.shifts, problem.travel
     rates = np.stack([shifts.hour_rate, shifts.length_rate], axis=1)
     classes, rate_class = np.unique(rates, axis=0, return_inverse=True)
@@ -35,11 +35,40 @@ def legs_of(problem: Problem) -> Legs:
     for hour_rate, length_rate in classes:
         money = np.rint(hour_rate * travel.time_ms + length_rate * travel.length_mm)
         tables.append(np.where(gone, NO_LEG, np.minimum(money, NO_LEG)).astype(np.int64))
-    return Legs(
-        out=np.stack(tables),
-        rate_class=rate_class.reshape(-1).astype(np.int64),
-        ms=travel.time_ms,
-        mm=travel.length_mm,
+    return np.stack(tables), rate_class.reshape(-1)
+
+
+def facts_of(problem: Problem) -> Facts:
+    """Pack a problem for the slack-induction kernels."""
+    visits, shifts = problem.visits, problem.shifts
+    fare, rate_class = _fares(problem)
+    has_windows = visits.window_ptr[:-1] < visits.window_ptr[1:]
+    shift_columns = (
+        shifts.start_place,
+        shifts.end_place,
+        np.minimum(shifts.limit_ms, shifts.close_ms - shifts.open_ms),
+        shifts.paid_ms,
+        shifts.write_up_ms,
+        shifts.load_limit,
+        shifts.day_cost,
+        rate_class,
+        _kinds(problem),
+    )
+    visit_columns = (
+        visits.place,
+        visits.work_ms,
+        visits.load,
+        ranked_worth(problem),
+        has_windows,
+    )
+    return Facts(
+        fare=fare,
+        ms=problem.travel.time_ms,
+        mm=problem.travel.length_mm,
+        visit=np.column_stack(visit_columns).astype(np.int64),
+        shift=np.column_stack(shift_columns).astype(np.int64),
+        rate=np.column_stack([shifts.hour_rate, shifts.overtime_rate - shifts.hour_rate]),
+        eligible=visits.eligible,
     )
 
 
@@ -71,19 +100,19 @@ def widest_tour(problem: Problem) -> int:
     return int(min(count, by_work, by_load))
 
 
-def _near(problem: Problem, legs: Legs) -> NDArray[np.int32]:
+def _near(problem: Problem, facts: Facts) -> NDArray[np.int32]:
     place = problem.visits.place
     kept = min(place.shape[0], NEAREST)
     near = np.empty((place.shape[0], kept), np.int32)
     for v, p in enumerate(place):
-        both_ways = legs.out[0, p, place] + legs.out[0, place, p]
+        both_ways = facts.fare[0, p, place] + facts.fare[0, place, p]
         both_ways[v] = -1
         near[v] = np.argsort(both_ways, kind="stable")[:kept]
     return near
 
 
 def _kinds(problem: Problem) -> NDArray[np.int64]:
-    """Number the shifts so that empty ones of the same number are worth the same to any visit."""
+    """Return a number for each shift; empty ones of one number are worth the same to any visit."""
     shifts, visits = problem.shifts, problem.visits
     columns = [array.astype(np.float64) for array in shifts[:-2]]
     if visits.window_open_ms.shape[0] == 0:
@@ -95,10 +124,10 @@ def _kinds(problem: Problem) -> NDArray[np.int64]:
     return kinds.reshape(-1).astype(np.int64)
 
 
-def _keys(problem: Problem, legs: Legs) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+def _keys(problem: Problem, facts: Facts) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
     visits = problem.visits
     starts = np.unique(problem.shifts.start_place)
-    far = legs.out[0][np.ix_(starts, visits.place)].min(axis=0).astype(np.float64)
+    far = facts.fare[0][np.ix_(starts, visits.place)].min(axis=0).astype(np.float64)
     loaded = bool(visits.load.any()) and not bool(visits.work_ms.any())
     demand = (visits.load if loaded else visits.work_ms).astype(np.float64)
     rows = [np.zeros_like(far), -demand, -far, far]
@@ -113,9 +142,7 @@ def _keys(problem: Problem, legs: Legs) -> tuple[NDArray[np.float64], NDArray[np
     return np.array(rows), np.cumsum(np.array(weights))
 
 
-def guide_of(problem: Problem, legs: Legs) -> Guide:
-    """Return neighbours, orders of insertion, and kinds of shifts."""
-    keys, key_weights = _keys(problem, legs)
-    return Guide(
-        near=_near(problem, legs), keys=keys, key_weights=key_weights, kinds=_kinds(problem)
-    )
+def guide_of(problem: Problem, facts: Facts) -> Guide:
+    """Return neighbours and orders of insertion."""
+    keys, weights = _keys(problem, facts)
+    return Guide(near=_near(problem, facts), keys=keys, weights=weights)

@@ -8,10 +8,11 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from georoute.improve.guide import guide_of, legs_of, ranked_worth, widest_tour
+from georoute.improve.guide import facts_of, guide_of, widest_tour
 from georoute.kernels.annealing import Book, anneal
 from georoute.kernels.random_stream import new_stream
-from georoute.kernels.slack_state import rows_of, write_row
+from georoute.kernels.slack_state import COUNT, FARE, MONEY, STOP, WORTH, rows_of, write_row
+from georoute.kernels.windowed_rows import Clockwork, price_by_clock
 from georoute.problem import Problem, Solution
 from georoute.timetable import solution_cost
 
@@ -77,53 +78,47 @@ class _Search:
     """Arrays of one search, and their way back to a solution."""
 
     def __init__(self, problem: Problem, solution: Solution, seed: int) -> None:
-        visits, shifts = problem.visits, problem.shifts
         count, number = problem.shift_count, problem.visit_count
-        self.travel = problem.travel
-        self.shifts = shifts
-        self.visits = visits._replace(worth=ranked_worth(problem))
-        self.legs = legs_of(problem)
+        self.clockwork = Clockwork(problem.travel, problem.visits, problem.shifts)
+        self.facts = facts_of(problem)
+        self.guide = guide_of(problem, self.facts)
         width = max(widest_tour(problem), *(order.shape[0] for order in solution.orders))
         self.rows = rows_of(count, number, width)
         self.backup = rows_of(count, 0, width)
-        self.guide = guide_of(problem, self.legs)
         self.stream = new_stream(seed, 0)
         for s, order in enumerate(solution.orders):
-            write_row(self.travel, self.visits, shifts, self.legs, self.rows, s, order)
+            write_row(self.facts, self.rows, s, order)
+            price_by_clock(self.clockwork, self.rows, s)
         absent = solution.unplaced(number)
+        money = self.rows.sum[:, MONEY].sum()
+        lost = self.worth[absent].sum()
+        spare = np.zeros(number, np.int64)
         self.book = Book(
-            best_stop=self.rows.stop.copy(),
-            best_count=self.rows.count.copy(),
+            best_stop=self.rows.cell[STOP].copy(),
+            best_count=self.rows.sum[:, COUNT].copy(),
             changed=np.zeros(count, np.int64),
-            absent=np.concatenate([absent, np.zeros(number - absent.shape[0], np.int64)]),
-            absent_before=np.zeros(number, np.int64),
-            absences=np.zeros(number, np.int64),
-            sums=np.array(
-                [
-                    self.rows.money.sum(),
-                    self.visits.worth[absent].sum(),
-                    absent.shape[0],
-                    self.rows.money.sum(),
-                    self.visits.worth[absent].sum(),
-                    0,
-                ],
-                np.int64,
-            ),
+            absent=np.concatenate([absent, spare])[:number],
+            absent_before=spare.copy(),
+            absences=spare.copy(),
+            sums=np.array([money, lost, absent.shape[0], money, lost, 0], np.int64),
             touch=np.zeros(count + 1, np.int64),
+            seen=np.zeros(count, np.int64),
             blink=np.full(1, 100, np.int64),
         )
 
     @property
+    def worth(self) -> NDArray[np.int64]:
+        return self.facts.visit[:, WORTH]
+
+    @property
     def mean_leg(self) -> float:
-        legs = float((self.rows.count + (self.rows.count > 0)).sum())
-        return float(self.rows.travel.sum()) / legs if legs else 1.0
+        legs = float((self.rows.sum[:, COUNT] + (self.rows.sum[:, COUNT] > 0)).sum())
+        return float(self.rows.sum[:, FARE].sum()) / legs if legs else 1.0
 
     def step(self, steps: int, warmth: float) -> None:
         anneal(
-            self.travel,
-            self.visits,
-            self.shifts,
-            self.legs,
+            self.clockwork,
+            self.facts,
             self.rows,
             self.backup,
             self.guide,
@@ -185,7 +180,7 @@ def improve(
         search.step(steps, hot * (COLD / HOT) ** share)
         schedule.took(steps, time.perf_counter() - begin)
     found = search.best()
-    worth = search.visits.worth
+    worth = search.worth
     if _value(problem, found, worth) < _value(problem, solution, worth):
         solution = found
     return ImproveResult(solution=solution, steps=schedule.done)

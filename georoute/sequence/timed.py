@@ -65,27 +65,28 @@ class _Search:
 
     def __init__(self, problem: Problem, shift: int, order: NDArray[np.int64]) -> None:
         self.names = order.copy()
-        self.clock = (problem.travel, problem.visits, problem.shifts, shift, self.names)
         m = order.shape[0]
-        self.seq = np.array([[m, *range(m), m + 1]] * 2, np.int64)
+        shifts = problem.shifts
         self.legs = _legs(problem, shift, order)
+        self.stops, self.spans = _stops(problem, order)
+        write_up = shifts.write_up_ms[shift]
+        fixed = self.stops[:, 0].sum() + write_up
+        ends = (shifts.open_ms[shift], shifts.close_ms[shift], shifts.limit_ms[shift])
+        self.limits = np.array([fixed, *ends, write_up], np.int64)
+        rates = (shifts.hour_rate[shift], shifts.overtime_rate[shift], shifts.length_rate[shift])
+        tariff = (*rates, shifts.paid_ms[shift], shifts.day_cost[shift])
+        self.tariff = np.array(tariff, np.float64)
+        self.seq = np.array([[m, *range(m), m + 1]] * 2, np.int64)
         self.sums = np.zeros((4, m + 2), np.int64)
         self.worth = np.zeros(4, np.int64)
-        self.queue = new_queue(np.arange(m))
-        shifts = problem.shifts
-        fixed = int(problem.visits.work_ms[order].sum() + shifts.write_up_ms[shift])
-        ends = (shifts.open_ms[shift], shifts.close_ms[shift], shifts.limit_ms[shift])
-        rates = (shifts.hour_rate[shift], shifts.overtime_rate[shift])
-        tariff = (*rates, shifts.length_rate[shift], shifts.paid_ms[shift], shifts.day_cost[shift])
-        self.limits = np.array([fixed, *ends], np.int64)
-        self.tariff = np.array(tariff, np.float64)
-        self.scratch = np.zeros((3, m), np.int64)
         self.trial = self.seq.copy()
+        self.queue = new_queue(np.arange(m))
         refresh_timed(self.legs, self.seq, self.sums)
-        price_timed(*self.clock, self.seq, self.scratch, self.worth)
-        travel_money = rates[0] * self.worth[2] + shifts.length_rate[shift] * self.worth[3]
-        self.heat = HEAT * float(travel_money) / (m + 1)
-        self.late_rate = float(travel_money) / max(1.0, float(self.worth[2]))
+        day = (self.legs, self.stops, self.spans, self.limits)
+        price_timed(*day, self.tariff, self.seq, self.worth)
+        travel_money = float(rates[0] * self.worth[2] + rates[2] * self.worth[3])
+        self.heat = HEAT * travel_money / (m + 1)
+        self.late_rate = travel_money / max(1.0, float(self.worth[2]))
 
     @property
     def order(self) -> NDArray[np.int64]:
@@ -96,16 +97,16 @@ class _Search:
     def descend(self, steps: int) -> int:
         """Make up to ``steps`` better exchanges; return the kind of the last, 0 for none."""
         made = descend_timed(
-            *self.clock,
             self.legs,
+            self.stops,
+            self.spans,
+            self.limits,
+            self.tariff,
             self.seq,
             self.sums,
             self.worth,
-            self.limits,
-            self.tariff,
-            self.queue,
-            self.scratch,
             self.trial,
+            self.queue,
             steps,
         )
         return int(made)
@@ -118,16 +119,16 @@ class _Search:
         while (kicks := budget.next_kicks(KICKS_A_CALL)) > 0:
             before = best_worth.copy()
             made = kick_and_repair_timed(
-                *self.clock,
                 self.legs,
+                self.stops,
+                self.spans,
+                self.limits,
+                self.tariff,
                 self.seq,
                 self.sums,
                 self.worth,
-                self.limits,
-                self.tariff,
-                self.queue,
-                self.scratch,
                 self.trial,
+                self.queue,
                 budget.stream,
                 kept,
                 kept_worth,
@@ -146,6 +147,19 @@ class _Search:
                 trail.note("kick", self.names[best[1:-1]], int(best_worth[1]))
         self.seq[0] = best
         self.worth[:] = best_worth
+
+
+def _stops(
+    problem: Problem, order: NDArray[np.int64]
+) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
+    """Return work and windows of the visits, as ``kernels.timed`` wants them."""
+    visits = problem.visits
+    first, last = visits.window_ptr[order], visits.window_ptr[order + 1]
+    each = [np.arange(a, b) for a, b in zip(first, last, strict=True)]
+    chosen = np.concatenate([np.empty(0, np.int64), *each]).astype(np.int64)
+    spans = np.column_stack((visits.window_open_ms[chosen], visits.window_close_ms[chosen]))
+    until = np.cumsum(last - first)
+    return np.column_stack((visits.work_ms[order], until - (last - first), until)), spans
 
 
 def _legs(problem: Problem, shift: int, order: NDArray[np.int64]) -> NDArray[np.int64]:

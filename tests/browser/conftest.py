@@ -11,7 +11,7 @@ from pathlib import Path
 import pytest
 from playwright.sync_api import Browser, Page, Route, sync_playwright
 
-from georoute.publish import publish
+from georoute.publishing import publish
 from tests.conftest import absent
 from tests.publish_helpers import hostile_plan, sample_plan, with_late_stop
 

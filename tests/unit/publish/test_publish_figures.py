@@ -10,9 +10,9 @@ from zoneinfo import ZoneInfo
 
 import pytest
 
-from georoute.publish.figures import Figures
-from georoute.publish.looks import HUES, looks_of
-from georoute.publish.words import words_for
+from georoute.publishing.figures import Figures
+from georoute.publishing.looks import HUES, looks_of
+from georoute.publishing.words import words_for
 from tests.publish_helpers import programme
 
 ZONE = ZoneInfo("America/Santiago")

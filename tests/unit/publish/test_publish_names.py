@@ -9,9 +9,9 @@ from datetime import date
 from hypothesis import given
 from hypothesis import strategies as st
 
-from georoute.publish.island import island_json
-from georoute.publish.names import PAGE_PATTERN, page_name, slug, slugs_of
-from georoute.publish.page_values import near_lon
+from georoute.publishing.island import island_json
+from georoute.publishing.names import PAGE_PATTERN, page_name, slug, slugs_of
+from georoute.publishing.page_values import near_lon
 
 
 @given(st.lists(st.text(), unique=True, max_size=8))

@@ -21,8 +21,8 @@ from pathlib import Path
 import pytest
 
 from georoute.errors import OutputError
-from georoute.publish import publish
-from georoute.publish.frame import leaflet_css, leaflet_js
+from georoute.publishing import publish
+from georoute.publishing.frame import leaflet_css, leaflet_js
 from tests.publish_helpers import HOSTILE, hostile_plan, sample_plan, with_late_stop
 
 ISSUED = datetime(2026, 3, 1, 17, 5, tzinfo=UTC)
@@ -103,7 +103,7 @@ def test_same_plan_gives_the_same_bytes_in_another_process(tmp_path: Path) -> No
     plan = with_late_stop(sample_plan(stops=6), order=4)
     here = publish(plan, tmp_path / "here", issued=ISSUED)
     code = (
-        "import sys; from datetime import UTC, datetime; from georoute.publish import publish\n"
+        "import sys; from datetime import UTC, datetime; from georoute.publishing import publish\n"
         "from tests.publish_helpers import sample_plan, with_late_stop\n"
         "publish(with_late_stop(sample_plan(stops=6), order=4), sys.argv[1], "
         "issued=datetime(2026, 3, 1, 17, 5, tzinfo=UTC))"
@@ -234,7 +234,7 @@ def test_no_contact_of_a_site_in_a_file_name_or_on_the_overview(tmp_path: Path) 
 
 def test_importing_the_stage_loads_no_map_library() -> None:
     code = (
-        "import sys, georoute.publish;"
+        "import sys, georoute.publishing;"
         "print([m for m in ('folium', 'jinja2', 'pyproj', 'geopandas') if m in sys.modules])"
     )
     done = subprocess.run([sys.executable, "-c", code], check=True, capture_output=True, text=True)

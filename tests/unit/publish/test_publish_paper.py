@@ -13,11 +13,11 @@ from pyproj import Geod
 from shapely import LineString, box
 
 from georoute.domain.sites import OpenInterval
-from georoute.publish.day_page import view_of
-from georoute.publish.day_view import DayView, lateness_s
-from georoute.publish.page_values import Edition
-from georoute.publish.placing import inside_length
-from georoute.publish.sketch import HEIGHT, PLATE_HEIGHT, WIDTH, sketch_of
+from georoute.publishing.day_page import view_of
+from georoute.publishing.day_view import DayView, lateness_s
+from georoute.publishing.page_values import Edition
+from georoute.publishing.placing import inside_length
+from georoute.publishing.sketch import HEIGHT, PLATE_HEIGHT, WIDTH, sketch_of
 from tests.publish_helpers import sample_plan, with_late_stop
 
 

@@ -8,12 +8,12 @@ from string import Formatter
 
 import pytest
 
-import georoute.publish
+import georoute.publishing
 from georoute.domain.cautions import CAUTION
 from georoute.domain.plan import ReasonCode, StopRule
-from georoute.publish.words import ENGLISH, LANGUAGES, words_for
+from georoute.publishing.words import ENGLISH, LANGUAGES, words_for
 
-FOLDER = Path(georoute.publish.__file__).parent
+FOLDER = Path(georoute.publishing.__file__).parent
 BUILT = ("theme_", "reason_", "stage_", "stop_rule_")  # ids put together from a prefix
 
 

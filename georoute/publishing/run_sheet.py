@@ -6,14 +6,14 @@ from typing import TYPE_CHECKING
 
 from markupsafe import Markup
 
-from georoute.publish.day_page import view_of
-from georoute.publish.frame import environment, own, policy
-from georoute.publish.names import OVERVIEW_NAME, page_name
-from georoute.publish.sketch import HEIGHT, PLATE_HEIGHT, WIDTH, sketch_of
+from georoute.publishing.day_page import view_of
+from georoute.publishing.frame import environment, own, policy
+from georoute.publishing.names import OVERVIEW_NAME, page_name
+from georoute.publishing.sketch import HEIGHT, PLATE_HEIGHT, WIDTH, sketch_of
 
 if TYPE_CHECKING:
     from georoute.domain.plan import DayTour
-    from georoute.publish.page_values import Edition
+    from georoute.publishing.page_values import Edition
 
 __all__ = ["run_sheet"]
 

@@ -9,14 +9,14 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from georoute.projection import local_plane
-from georoute.publish.placing import Scene, leader_ends, place_boxes
+from georoute.publishing.placing import Scene, leader_ends, place_boxes
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from georoute.domain.sites import Base
-    from georoute.publish.day_view import DayView
-    from georoute.publish.words import Words
+    from georoute.publishing.day_view import DayView
+    from georoute.publishing.words import Words
 
 __all__ = ["HEIGHT", "PLATE_HEIGHT", "WIDTH", "Plate", "Sketch", "sketch_of"]
 

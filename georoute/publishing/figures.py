@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from datetime import date
 
     from georoute.domain.plan import Plan
-    from georoute.publish.words import Words
+    from georoute.publishing.words import Words
 
 __all__ = ["Figures"]
 

@@ -5,18 +5,18 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from georoute.publish.day_view import lateness_s
-from georoute.publish.looks import looks_of
-from georoute.publish.names import page_name
+from georoute.publishing.day_view import lateness_s
+from georoute.publishing.looks import looks_of
+from georoute.publishing.names import page_name
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
     from datetime import datetime
 
     from georoute.domain.plan import DayTour, Plan
-    from georoute.publish.day_view import PlanIndex
-    from georoute.publish.figures import Figures
-    from georoute.publish.looks import TourLook
+    from georoute.publishing.day_view import PlanIndex
+    from georoute.publishing.figures import Figures
+    from georoute.publishing.looks import TourLook
 
 __all__ = ["Bar", "OverviewView", "StageRow", "TourRow", "UnplacedRow", "overview_view"]
 

@@ -9,7 +9,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from georoute.publish.words_es import SPANISH
+from georoute.publishing.words_es import SPANISH
 
 if TYPE_CHECKING:
     from collections.abc import Mapping

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from georoute.domain.instants import elapsed_s
-from georoute.publish.time_rule import TimeRule, time_rule
+from georoute.publishing.time_rule import TimeRule, time_rule
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -15,9 +15,9 @@ if TYPE_CHECKING:
     from georoute.domain.people import Inspector, Shift
     from georoute.domain.plan import DayTour, Leg, Plan, Stop
     from georoute.domain.sites import Base, Site, Visit
-    from georoute.publish.figures import Figures
-    from georoute.publish.looks import TourLook
-    from georoute.publish.words import Words
+    from georoute.publishing.figures import Figures
+    from georoute.publishing.looks import TourLook
+    from georoute.publishing.words import Words
 
 __all__ = ["DayView", "PlanIndex", "StopView", "day_view", "lateness_s", "window_text"]
 

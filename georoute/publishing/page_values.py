@@ -5,10 +5,10 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from georoute.publish.day_view import PlanIndex
-from georoute.publish.figures import Figures
-from georoute.publish.names import slugs_of
-from georoute.publish.words import words_for
+from georoute.publishing.day_view import PlanIndex
+from georoute.publishing.figures import Figures
+from georoute.publishing.names import slugs_of
+from georoute.publishing.words import words_for
 
 if TYPE_CHECKING:
     from collections.abc import Mapping

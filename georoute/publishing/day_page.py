@@ -4,15 +4,15 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from georoute.publish.day_view import day_view
-from georoute.publish.frame import DataLayer, Page, SurveyMap
-from georoute.publish.looks import looks_of
-from georoute.publish.names import OVERVIEW_NAME, page_name
+from georoute.publishing.day_view import day_view
+from georoute.publishing.frame import DataLayer, Page, SurveyMap
+from georoute.publishing.looks import looks_of
+from georoute.publishing.names import OVERVIEW_NAME, page_name
 
 if TYPE_CHECKING:
     from georoute.domain.plan import DayTour
-    from georoute.publish.day_view import DayView
-    from georoute.publish.page_values import Edition
+    from georoute.publishing.day_view import DayView
+    from georoute.publishing.page_values import Edition
 
 __all__ = ["day_page", "view_of"]
 

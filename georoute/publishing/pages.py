@@ -7,11 +7,11 @@ from typing import TYPE_CHECKING
 
 from georoute.errors import OutputError
 from georoute.files import atomic_write_bytes
-from georoute.publish.day_page import day_page
-from georoute.publish.names import OVERVIEW_NAME, PAGE_PATTERN, page_name
-from georoute.publish.overview_page import overview_page
-from georoute.publish.page_values import Edition
-from georoute.publish.run_sheet import run_sheet
+from georoute.publishing.day_page import day_page
+from georoute.publishing.names import OVERVIEW_NAME, PAGE_PATTERN, page_name
+from georoute.publishing.overview_page import overview_page
+from georoute.publishing.page_values import Edition
+from georoute.publishing.run_sheet import run_sheet
 
 if TYPE_CHECKING:
     from collections.abc import Collection

@@ -21,7 +21,7 @@ import jinja2
 from branca.element import Element, Figure, MacroElement
 from markupsafe import Markup
 
-from georoute.publish.island import island_json
+from georoute.publishing.island import island_json
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -44,7 +44,7 @@ _LEAFLET_FOLDER = "static/js_lib_leaflet"
 def environment() -> jinja2.Environment:
     """Return the templates of the pages: everything put into them is escaped."""
     return jinja2.Environment(
-        loader=jinja2.PackageLoader("georoute.publish", "templates"),
+        loader=jinja2.PackageLoader("georoute.publishing", "templates"),
         autoescape=True,
         undefined=jinja2.StrictUndefined,
         trim_blocks=True,
@@ -55,7 +55,7 @@ def environment() -> jinja2.Environment:
 @functools.cache
 def own(name: str) -> str:
     """Return the text of one of our own assets (scripts and style sheets)."""
-    asset = resources.files("georoute.publish") / "assets" / name
+    asset = resources.files("georoute.publishing") / "assets" / name
     lines = [line.strip() for line in asset.read_text(encoding="utf-8").splitlines()]
     # comments of whole lines and indentation are for readers of the source, not of the page
     return "\n".join(line for line in lines if line and not line.startswith(("//", "/*")))

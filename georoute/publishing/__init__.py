@@ -47,7 +47,7 @@ def publish(
         There is no catalogue for the language.
     """
     # folium and its templates are slow to import; nobody pays for them before publishing
-    from georoute.publish.pages import pages_of, write_pages  # noqa: PLC0415
+    from georoute.publishing.pages import pages_of, write_pages  # noqa: PLC0415
 
     pages = pages_of(plan, issued=issued, language=language)
     return write_pages(pages, Path(folder), plan_id=plan.plan_id)

@@ -15,7 +15,7 @@ if TYPE_CHECKING:
     from georoute.domain.people import Shift
     from georoute.domain.plan import DayTour
     from georoute.domain.sites import Visit
-    from georoute.publish.figures import Figures
+    from georoute.publishing.figures import Figures
 
 __all__ = ["Block", "Bracket", "Tick", "TimeRule", "time_axis", "time_rule"]
 

@@ -4,13 +4,13 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from georoute.publish.frame import DataLayer, Page, SurveyMap
-from georoute.publish.overview_view import overview_view
+from georoute.publishing.frame import DataLayer, Page, SurveyMap
+from georoute.publishing.overview_view import overview_view
 
 if TYPE_CHECKING:
     from georoute.domain.plan import DayTour
-    from georoute.publish.overview_view import OverviewView, TourRow
-    from georoute.publish.page_values import Edition
+    from georoute.publishing.overview_view import OverviewView, TourRow
+    from georoute.publishing.page_values import Edition
 
 __all__ = ["overview_page"]
 

@@ -74,7 +74,17 @@ def test_metres_without_a_system_are_one_fault(headers: str, tmp_path: Path) -> 
     assert "EPSG" in finding.remedy
 
 
-@pytest.mark.parametrize("crs", ["EPSG:999999", "Mars", "EPSG:5703", "EPSG:4978", "{}"])
+@pytest.mark.parametrize(
+    "crs",
+    [
+        "EPSG:999999",
+        "Mars",
+        "EPSG:5703",  # heights
+        "EPSG:4978",  # geocentric
+        "IAU_2015:30100",  # the Moon
+        "{}",
+    ],
+)
 def test_unknown_systems_are_refused(crs: str, tmp_path: Path) -> None:
     path = table(tmp_path / "r.csv", [(1.0, 2.0)])
     assert faults(check_register(path, crs=crs)) == [(None, "crs", "unknown_crs")]

@@ -116,7 +116,7 @@ KINDS = (
         label="Plaza de juegos",
         task="playground inspection",
         count=22,
-        work_min=(25, 60),
+        work_min=(35, 75),
         access_min=(3, 8),
         area=TOWNS,
         highways=STREETS,
@@ -210,7 +210,7 @@ lon = $sur_lon
 shift_start = "08:00"
 shift_end = "17:30"
 paid_h = 8.0
-overtime_limit_h = 1.0
+overtime_limit_h = 0.5
 write_up_min = 30
 
 [calendar]
@@ -242,8 +242,8 @@ access_min = 5
 currency = "CLP"
 hour = 14500
 km = 260
-overtime_hour = 21750
-day_opened = 9000
+overtime_hour = 29000
+day_opened = 2500
 
 [travel]
 method = "detour" # times and lengths are estimated from straight lines

@@ -98,6 +98,18 @@ def test_the_programme_is_the_week_it_should_be() -> None:
     assert 13 <= len(programme.shifts()) <= 15
 
 
+def test_the_week_is_well_filled_but_not_full() -> None:
+    programme = read_programme(DEMO / "programme.toml")
+    register, _ = read_register(DEMO / "register.csv", programme=programme)
+    longest_s = max(shift.paid_s + shift.overtime_limit_s for shift in programme.shifts())
+    sizes_s = {visit.site_id: visit.work_s + visit.access_s for visit in register.visits}
+    # One site is there to show how a reason reads: its work alone is longer than any shift.
+    assert [site for site, size_s in sizes_s.items() if size_s > longest_s] == ["SIP-001"]
+    work_s = sum(sizes_s.values()) - sizes_s["SIP-001"]
+    there_s = sum(shift.paid_s - shift.write_up_s for shift in programme.shifts())
+    assert 0.7 <= work_s / there_s <= 0.85  # travel comes on top
+
+
 @pytest.mark.parametrize("fault", script.PLANTED, ids=lambda fault: str(fault.kind))
 def test_every_planted_fault_is_found(fault: script.Planted) -> None:
     findings = check_register(DEMO / "register_dirty.csv")

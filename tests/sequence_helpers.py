@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from georoute.kernels.arrays import MUST, Shifts, Travel, Visits
+from georoute.kernels.clock import time_tour, tour_cost
 from georoute.problem import Problem
 
 if TYPE_CHECKING:
@@ -123,58 +124,12 @@ def plain_money(problem: Problem, order: Iterable[int]) -> int:
     return total
 
 
-def plain_worth(problem: Problem, order: Sequence[int]) -> tuple[int, float]:
-    """Return (ms late or in excess, money) of an order: minute by minute, without kernels.
-
-    Leaving later is tried for every departure that could matter, the ends of all waits.
-    """
-    earliest = _walk(problem, order, int(problem.shifts.open_ms[0]))
-    if earliest[1] > 0:
-        return _priced(problem, earliest)
-    best = _priced(problem, earliest)
-    span = earliest[2]
-    for later in range(span + 1):
-        tour = _walk(problem, order, int(problem.shifts.open_ms[0]) + later)
-        if tour[1] > 0 or tour[0] > earliest[0]:
-            break
-        best = min(best, _priced(problem, tour))
-    return best
-
-
-def _walk(problem: Problem, order: Sequence[int], depart: int) -> tuple[int, int, int, int, int]:
-    """Return finish, ms late, ms waited, mm, departure."""
-    v, travel = problem.visits, problem.travel
-    here, now, late, waited, length = int(problem.shifts.start_place[0]), depart, 0, 0, 0
-    for visit in order:
-        there = int(v.place[visit])
-        now += int(travel.time_ms[here, there])
-        length += int(travel.length_mm[here, there])
-        spans = [
-            (int(v.window_open_ms[k]), int(v.window_close_ms[k]))
-            for k in range(int(v.window_ptr[visit]), int(v.window_ptr[visit + 1]))
-        ]
-        open_still = [span for span in spans if now <= span[1]]
-        if open_still:
-            waited += max(0, open_still[0][0] - now)
-            now = max(now, open_still[0][0])
-        elif spans:
-            late += now - spans[-1][1]
-        now += int(v.work_ms[visit])
-        here = there
-    end = int(problem.shifts.end_place[0])
-    finish = now + int(travel.time_ms[here, end]) + int(problem.shifts.write_up_ms[0])
-    return finish, late, waited, length + int(travel.length_mm[here, end]), depart
-
-
-def _priced(problem: Problem, tour: tuple[int, int, int, int, int]) -> tuple[int, float]:
-    finish, late, _, length, depart = tour
-    s = problem.shifts
-    duration = finish - depart
-    paid = min(duration, int(s.paid_ms[0]))
-    money = float(s.hour_rate[0]) * paid + float(s.overtime_rate[0]) * (duration - paid)
-    money += float(s.length_rate[0]) * length
-    excess = max(0, finish - int(s.close_ms[0]), duration - int(s.limit_ms[0]))
-    return late + excess, np.floor(money + 0.5)
+def clock_worth(problem: Problem, order: Iterable[int]) -> tuple[int, int]:
+    """Return (ms late or in excess, money) of an order by the clock of the product."""
+    tour = np.array(list(order), np.int64)
+    times = time_tour(problem.travel, problem.visits, problem.shifts, 0, tour)
+    money = int(tour_cost(problem.shifts, 0, times))
+    return int(times.late_ms) + int(times.excess_ms), money
 
 
 def best_by_trying_all(problem: Problem) -> int:

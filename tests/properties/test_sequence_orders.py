@@ -8,18 +8,16 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from numpy.typing import NDArray
 
-from georoute.kernels.clock import time_tour, tour_cost
 from georoute.problem import Problem
 from georoute.sequence import SequencedTour, sequence_tour
 from tests.sequence_helpers import (
     best_by_dynamic_programming,
     best_by_trying_all,
+    clock_worth,
     day_problem,
     one_way_table,
     plain_money,
-    plain_worth,
     plane_table,
 )
 
@@ -30,12 +28,6 @@ FEW_KICKS = 40
 def _run(problem: Problem, *, seed: int = 1, kicks: int = FEW_KICKS) -> SequencedTour:
     order = np.arange(problem.visit_count, dtype=np.int64)
     return sequence_tour(problem, 0, order, kicks=kicks, seed=seed, keep_log=True)
-
-
-def _clock_worth(problem: Problem, order: NDArray[np.int64]) -> tuple[int, int]:
-    times = time_tour(problem.travel, problem.visits, problem.shifts, 0, order)
-    money = int(tour_cost(problem.shifts, 0, times))
-    return int(times.late_ms) + int(times.excess_ms), money
 
 
 @st.composite
@@ -69,7 +61,7 @@ def test_a_tour_stays_a_permutation_and_is_never_worse(problem: Problem) -> None
     found = _run(problem)
     given_order = np.arange(problem.visit_count)
     assert sorted(found.order.tolist()) == given_order.tolist()
-    assert _clock_worth(problem, found.order) <= _clock_worth(problem, given_order)
+    assert clock_worth(problem, found.order) <= clock_worth(problem, given_order)
 
 
 @given(problem=days())
@@ -130,8 +122,8 @@ def test_days_of_eleven_visits_cost_what_dynamic_programming_finds(
 def test_small_days_with_windows_are_worth_what_trying_all_orders_finds(problem: Problem) -> None:
     found = _run(problem, kicks=300)
     ways = permutations(range(problem.visit_count))
-    best = min(plain_worth(problem, way) for way in ways)
-    assert plain_worth(problem, found.order.tolist()) == best
+    best = min(clock_worth(problem, way) for way in ways)
+    assert clock_worth(problem, found.order) == best
 
 
 @given(problem=days(windows=True))

@@ -145,7 +145,7 @@ def best_place(board: Board, s: Int, v: Int, ceiling: Int) -> tuple[Int, Int]:
 
 @kernel
 def replaced(board: Board, s: Int, k: Int, v: Int, ceiling: Int) -> Int:
-    """Return the money of shift ``s`` with its stop ``k`` replaced by ``v``.
+    """Return the money of shift ``s``, which fits, with its stop ``k`` replaced by ``v``.
 
     ``INFEASIBLE`` where a limit breaks, or where the money is not below ``ceiling``.
     """

@@ -11,6 +11,8 @@ from sklearn.cluster import KMeans
 from threadpoolctl import threadpool_limits
 
 from georoute.kernels.balance import deal_out
+from georoute.kernels.clock import time_tour, tour_cost
+from georoute.kernels.first_order import nearest_first
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -21,7 +23,9 @@ if TYPE_CHECKING:
 __all__ = ["Group", "cluster_group"]
 
 ATTEMPTS = 6
-"""More days are tried so often when the visits do not fit into as many as estimated."""
+"""More days are tried so often."""
+BREACH = 10.0
+"""Time beyond a limit is priced at so many times the hourly rate."""
 TOLERANCE = 0.01
 """Share of the working time by which days may be overfull: estimates are no better."""
 BALANCE_ROUNDS = 10
@@ -135,6 +139,61 @@ def _open_more(group: Group, opened: NDArray[np.int64], count: int) -> NDArray[n
     return np.array(chosen, np.int64)
 
 
+class _Days:
+    """The opened shifts while visits are dealt out to them, again and again."""
+
+    def __init__(
+        self, group: Group, opened: NDArray[np.int64], centres_m: NDArray[np.float64]
+    ) -> None:
+        self.points_m, self.busy_ms = group.points_m, group.busy_ms
+        self.room_ms, self.carry = group.room_ms[opened], group.carry[opened]
+        self.load = group.problem.visits.load[group.visits]
+        self.trips_ms = group.round_ms[:, opened]
+        self.allowed = group.suitable[:, opened]
+        self.ms_per_m = max(group.figures.ms_per_m, 1e-9)
+        self.centres_m = centres_m
+        self.outing_ms = np.full(opened.size, float(np.mean(self.trips_ms.min(axis=1))))
+        self.radius_m = np.full(opened.size, float(np.median(self._gap_m().min(axis=1))))
+
+    def _gap_m(self) -> NDArray[np.float64]:
+        gap: NDArray[np.float64] = np.hypot(
+            self.points_m[:, :1] - self.centres_m[:, 0],
+            self.points_m[:, 1:] - self.centres_m[:, 1],
+        )
+        return gap
+
+    def deal(self) -> tuple[NDArray[np.int64], tuple[float, float]]:
+        """Deal out; return the day of each visit, and the time too much and the distance."""
+        gap = self._gap_m()
+        # On the way out and back a day passes its base anyway: far bases attract nothing.
+        distance = np.where(self.allowed, gap * self.ms_per_m + self.trips_ms / 4, np.inf)
+        # Outside twice the mean radius of its day a visit costs a way of its own.
+        apart = np.maximum(0.0, gap - 2.0 * self.radius_m) * self.ms_per_m
+        takes = self.busy_ms[:, None] + 2.0 * apart
+        ranked = np.sort(distance, axis=1)
+        lost = ranked[:, min(1, ranked.shape[1] - 1)] - ranked[:, 0]
+        queue = np.argsort(-np.nan_to_num(lost, posinf=FAR_MS), kind="stable")
+        used = self.outing_ms.copy()
+        day_of = np.zeros(self.busy_ms.size, np.int64)
+        deal_out(distance, queue, takes, self.load, used, self.room_ms, self.carry, day_of)
+        excess = float(np.maximum(0.0, used - self.room_ms).sum())
+        return day_of, (excess, float(distance[np.arange(day_of.size), day_of].sum()))
+
+    def move(self, day_of: NDArray[np.int64]) -> None:
+        """Move the centres to what the days got, and learn how far out and wide they are."""
+        days, every = self.room_ms.size, np.arange(day_of.size)
+        weight = np.bincount(day_of, self.busy_ms, days)
+        filled = weight > 0
+        for axis in (0, 1):
+            total = np.bincount(day_of, self.busy_ms * self.points_m[:, axis], days)
+            self.centres_m[filled, axis] = total[filled] / weight[filled]
+        members = np.maximum(1, np.bincount(day_of, minlength=days))
+        away = np.bincount(day_of, self.trips_ms[every, day_of], days) / members
+        spread = np.bincount(day_of, self._gap_m()[every, day_of], days) / members
+        self.outing_ms = np.where(filled, away, self.outing_ms)
+        self.radius_m = np.where(spread > 0, spread, self.radius_m)
+
+
 def _balance(
     group: Group, opened: NDArray[np.int64], centres_m: NDArray[np.float64]
 ) -> tuple[NDArray[np.int64], float]:
@@ -143,36 +202,15 @@ def _balance(
     Each round deals out by the distance to the centres and moves the centres to what they got;
     the round with the least excess, then the least distance, counts.
     """
-    points, busy = group.points_m, group.busy_ms
-    room, trips = group.room_ms[opened], group.round_ms[:, opened]
-    load, carry = group.problem.visits.load[group.visits], group.carry[opened]
-    allowed = group.suitable[:, opened]
-    outing = np.full(opened.size, float(np.mean(trips.min(axis=1))))
-    best: tuple[float, float] | None = None
-    chosen = np.zeros(points.shape[0], np.int64)
-    for _ in range(BALANCE_ROUNDS):
-        gap = np.hypot(points[:, :1] - centres_m[:, 0], points[:, 1:] - centres_m[:, 1])
-        # On the way out and back a day passes its base anyway: far bases attract nothing.
-        distance = np.where(allowed, gap * max(group.figures.ms_per_m, 1e-9) + trips / 4, np.inf)
-        ranked = np.sort(distance, axis=1)
-        lost = ranked[:, min(1, opened.size - 1)] - ranked[:, 0]
-        queue = np.argsort(-np.nan_to_num(lost, posinf=FAR_MS), kind="stable")
-        used = outing.copy()
-        day_of = np.zeros(points.shape[0], np.int64)
-        deal_out(distance, queue, busy, load, used, room, carry, day_of)
-        excess = float(np.maximum(0.0, used - room).sum())
-        key = (excess, float(distance[np.arange(day_of.size), day_of].sum()))
-        if best is None or key < best:
+    days = _Days(group, opened, centres_m)
+    chosen, best = days.deal()
+    day_of = chosen
+    for _ in range(BALANCE_ROUNDS - 1):
+        days.move(day_of)
+        day_of, key = days.deal()
+        if key < best:
             best, chosen = key, day_of
-        weight = np.bincount(day_of, busy, opened.size)
-        filled = weight > 0
-        for axis in (0, 1):
-            total = np.bincount(day_of, busy * points[:, axis], opened.size)
-            centres_m[filled, axis] = total[filled] / weight[filled]
-        members = np.bincount(day_of, minlength=opened.size)
-        away = np.bincount(day_of, trips[np.arange(day_of.size), day_of], opened.size)
-        outing = np.where(members > 0, away / np.maximum(1, members), outing)
-    return opened[chosen], best[0] if best is not None else 0.0
+    return opened[chosen], best[0]
 
 
 def _attempt(group: Group, count: int, seed: int) -> tuple[NDArray[np.int64], float]:
@@ -190,17 +228,41 @@ def _attempt(group: Group, count: int, seed: int) -> tuple[NDArray[np.int64], fl
     return _balance(group, opened, np.concatenate([centres, centres[extra]]))
 
 
+def _bill(group: Group, shift_of: NDArray[np.int64]) -> float:
+    """Return the money of the days in the nearest neighbour's order, breaches priced high."""
+    problem, total = group.problem, 0.0
+    for day in np.unique(shift_of):
+        s = group.shifts[day]
+        members = group.visits[shift_of == day]
+        start = problem.shifts.start_place[s]
+        order = nearest_first(problem.travel, problem.visits.place, start, members)
+        times = time_tour(problem.travel, problem.visits, problem.shifts, s, order)
+        breach_ms = float(times.late_ms) + float(times.excess_ms)
+        rate = max(float(problem.shifts.hour_rate[s]), float(problem.shifts.overtime_rate[s]), 1.0)
+        total += float(tour_cost(problem.shifts, s, times)) + BREACH * rate * breach_ms
+    return total
+
+
 def cluster_group(group: Group, *, seed: int) -> NDArray[np.int64]:
-    """Return the shift (0 .. m - 1) of each visit of the group."""
+    """Return the shift (0 .. m - 1) of each visit of the group.
+
+    More days are opened as long as the visits do not fit, or as it makes the plan cheaper.
+    """
     n_visits, n_shifts = group.suitable.shape
-    if n_shifts == 1:
-        return np.zeros(n_visits, np.int64)
+    most = min(n_shifts, n_visits)
+    count = min(_days_needed(group), most)
     typical = float(np.mean(group.room_ms))
-    count = min(_days_needed(group), n_visits)
     shift_of, excess = _attempt(group, count, seed)
+    bill = _bill(group, shift_of)
     for _ in range(ATTEMPTS):
-        if excess <= TOLERANCE * typical * count or count == min(n_shifts, n_visits):
+        if count == most:
             break
-        count = min(n_shifts, n_visits, count + max(1, int(excess // typical)))
-        shift_of, excess = _attempt(group, count, seed)
+        crowded = excess > TOLERANCE * typical * count
+        count = min(most, count + max(1, int(excess // typical)))
+        other, excess = _attempt(group, count, seed)
+        other_bill = _bill(group, other)
+        if other_bill >= bill and not crowded:
+            break
+        if other_bill < bill:
+            shift_of, bill = other, other_bill
     return shift_of

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 import sys
+from collections.abc import Iterable
 from pathlib import Path
 
 from georoute.cli.exit_codes import MEANINGS
@@ -13,7 +14,7 @@ from georoute.register.programme_fields import programme_fields
 README = Path(__file__).parents[1] / "README.md"
 
 
-def _table(header: tuple[str, ...], rows: list[tuple[str, ...]]) -> str:
+def _table(header: tuple[str, ...], rows: Iterable[tuple[str, ...]]) -> str:
     def cell(text: str) -> str:
         return text.replace("|", "\\|").replace("\n", " ")
 
@@ -55,7 +56,8 @@ def renewed(text: str) -> str:
     for name, make in TABLES.items():
         pattern = re.compile(rf"(<!-- table: {name} -->\n).*?(<!-- end -->)", re.DOTALL)
         assert len(pattern.findall(text)) == 1, f"README has no place for the table {name!r}"
-        text = pattern.sub(lambda found, make=make: found[1] + make() + "\n" + found[2], text)
+        table = make()
+        text = pattern.sub(lambda found, table=table: f"{found[1]}{table}\n{found[2]}", text)  # type: ignore[misc]  # the default binds the loop's value
     return text
 
 

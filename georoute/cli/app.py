@@ -17,7 +17,7 @@ from georoute.cli.render import print_error, print_findings
 from georoute.cli.show import show
 from georoute.errors import GeorouteError, InputError, OutputError, PlanError
 
-__all__ = ["app", "main"]
+__all__ = ["app", "exit_code_of", "main"]
 
 app = typer.Typer(
     name="georoute",

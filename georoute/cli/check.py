@@ -45,24 +45,27 @@ def _check_plan(path: Path) -> tuple[Finding, ...]:
 
 def _check_programme(path: Path) -> tuple[Finding, ...]:
     """Check the programme, its register, and its travel table where it has one."""
-    from georoute.errors import GeorouteError
+    from georoute.errors import InputError
     from georoute.pipeline import prepare
-    from georoute.register import check_register, read_programme, read_register
+    from georoute.register import (
+        check_programme,
+        check_register,
+        read_programme,
+        read_register,
+    )
 
-    try:
-        programme = read_programme(path)
-    except GeorouteError as error:
-        if not error.findings:
-            raise
-        return error.findings
+    findings = check_programme(path)
+    if any(finding.is_fault for finding in findings):
+        return findings
+    programme = read_programme(path)
     source = Path(programme.register.path)
-    findings = check_register(source, programme=programme)
+    findings += check_register(source, programme=programme)
     if any(finding.is_fault for finding in findings):
         return findings
     register, _ = read_register(source, programme=programme)
     try:
         prepared = prepare(programme, register)
-    except GeorouteError as error:
+    except InputError as error:
         if not error.findings:
             raise
         return (*findings, *error.findings)

@@ -35,13 +35,11 @@ class Effort:
 EFFORTS: dict[str, Effort] = {
     effort.name: effort
     for effort in (
-        Effort(name=EffortName.QUICK, kicks_per_stop=20, relocation_rounds=20, improve_steps=60),
-        Effort(
-            name=EffortName.NORMAL, kicks_per_stop=200, relocation_rounds=100, improve_steps=600
-        ),
+        Effort(name=EffortName.QUICK, kicks_per_stop=10, relocation_rounds=20, improve_steps=60),
+        Effort(name=EffortName.NORMAL, kicks_per_stop=50, relocation_rounds=100, improve_steps=600),
         Effort(
             name=EffortName.THOROUGH,
-            kicks_per_stop=5_000,
+            kicks_per_stop=2_000,
             relocation_rounds=1_000,
             improve_steps=20_000,
         ),

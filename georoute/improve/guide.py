@@ -97,7 +97,7 @@ def widest_tour(problem: Problem) -> int:
     by_work = np.searchsorted(np.cumsum(np.sort(problem.visits.work_ms)), longest, side="right")
     most_load = int(problem.shifts.load_limit.max(initial=0))
     by_load = np.searchsorted(np.cumsum(np.sort(problem.visits.load)), most_load, side="right")
-    return int(min(count, by_work, by_load))
+    return min(count, int(by_work), int(by_load))
 
 
 def _near(problem: Problem, facts: Facts) -> NDArray[np.int32]:

@@ -150,14 +150,13 @@ def improve(
     seed: int,
     progress: Progress,
     should_stop: ShouldStop,
-    seconds: float | None = None,
 ) -> ImproveResult:
     """Improve all days together, from any feasible solution, never to a worse one.
 
     Money decides: tours by the tariff plus the worth of what is left out, visits of higher rank
-    first. Without ``seconds`` the search does ``effort.improve_steps`` steps per visit and is
-    the same on every run; with it, it cools over that much processor time. ``should_stop`` ends
-    it at once with the best found so far.
+    first. Without ``effort.seconds`` the search does ``effort.improve_steps`` steps per visit
+    and is the same on every run; with it, it cools over that time. ``should_stop`` ends it at
+    once with the best found so far.
 
     J. Christiaens, G. Vanden Berghe, "Slack induction by string removals for vehicle routing
     problems", Transportation Science 54 (2020) 417-433.
@@ -165,7 +164,7 @@ def improve(
     if problem.visit_count == 0 or problem.shift_count == 0:
         return ImproveResult(solution=solution, steps=0)
     search = _Search(problem, solution, seed)
-    schedule = _Schedule(effort.improve_steps * problem.visit_count, seconds)
+    schedule = _Schedule(effort.improve_steps * problem.visit_count, effort.seconds)
     search.step(1, 0.0)
     hot = HOT * search.mean_leg
     while (share := schedule.share) < 1.0 and not should_stop():

@@ -71,7 +71,7 @@ class Book(NamedTuple):
 
 
 @kernel
-def _broken(clockwork: Clockwork, facts: Facts, rows: Rows, s: Int) -> bool:
+def _broken(clockwork: Clockwork, facts: Facts, rows: Rows, s: Int) -> bool | np.bool_:
     """Tell whether what was taken out left row ``s`` against a limit.
 
     Only where travel breaks the triangle inequality, or a leg does not exist.
@@ -81,7 +81,9 @@ def _broken(clockwork: Clockwork, facts: Facts, rows: Rows, s: Int) -> bool:
     if rows.sum[s, WINDOWED] > 0:
         return breaks_a_limit(clockwork, rows, s)
     duration = rows.sum[s, DRIVE] + rows.sum[s, WORKED] + facts.shift[s, WRITE_UP]
-    return duration > facts.shift[s, ROOM] or rows.sum[s, DRIVE] >= UNREACHABLE
+    if rows.sum[s, DRIVE] >= UNREACHABLE:
+        return True
+    return duration > facts.shift[s, ROOM]
 
 
 @kernel
@@ -126,11 +128,9 @@ def _wanted(book: Book, value: Int, n_absent: Int, slack: Float) -> bool:
 
 
 @kernel
-def _price_strings(
-    clockwork: Clockwork, rows: Rows, touch: NDArray[np.int64], any_window: bool
-) -> None:
+def _price_strings(clockwork: Clockwork, rows: Rows, touch: NDArray[np.int64]) -> None:
     """Price the ruined rows by the clock where windows matter."""
-    if any_window:
+    if clockwork.visits.window_open_ms.shape[0] > 0:
         for i in range(1, touch[0] + 1):
             price_by_clock(clockwork, rows, touch[i])
 
@@ -149,14 +149,13 @@ def anneal(
 ) -> None:
     """Do ``steps`` rounds of ruin and recreate at temperature ``warmth`` (micro-units of money)."""
     absent, touch, sums = book.absent, book.touch, book.sums
-    any_window = clockwork.visits.window_open_ms.shape[0] > 0
     for _ in range(steps):
         n_absent = sums[2]
         for k in range(n_absent):
             book.absent_before[k] = absent[k]
         touch[0] = 0
         n_absent = ruin(facts, rows, guide.near, absent, n_absent, touch, backup, stream)
-        _price_strings(clockwork, rows, touch, any_window)
+        _price_strings(clockwork, rows, touch)
         n_absent = recreate(
             clockwork,
             facts,

@@ -9,6 +9,8 @@ drawn only for places that would be taken: at any other it changes nothing.
 
 from __future__ import annotations
 
+from typing import TypeAlias
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -46,6 +48,9 @@ from georoute.kernels.windowed_rows import Clockwork, best_column
 
 __all__ = ["recreate"]
 
+Found: TypeAlias = tuple[Int, Int, Int]
+"""Rise of money, shift, column."""
+
 LOG_KEPT = np.log(0.99)
 """Log of the share of places looked at: one in a hundred is blinked away."""
 
@@ -64,7 +69,7 @@ def _plain_place(
     seen: NDArray[np.int64],
     blink: NDArray[np.int64],
     stream: NDArray[np.uint64],
-) -> tuple[Int, Int, Int]:
+) -> Found:
     """Return (rise, shift, column) of the cheapest place for a visit without windows.
 
     Only tours without windows are looked at; shift -1 where none is worth it. One long loop on
@@ -129,9 +134,9 @@ def _windowed_place(
     facts: Facts,
     rows: Rows,
     v: Int,
-    found: tuple[Int, Int, Int],
+    found: Found,
     seen: NDArray[np.int64],
-) -> tuple[Int, Int, Int]:
+) -> Found:
     """Improve on ``found`` in the tours where the visit or a stop has windows."""
     best, best_shift, column = found
     for s in range(rows.sum.shape[0]):
@@ -209,7 +214,7 @@ def recreate(
     left = np.int64(0)
     for i in range(n_absent):
         v = absent[i]
-        found = (facts.visit[v, WORTH], np.int64(-1), np.int64(-1))
+        found: Found = (facts.visit[v, WORTH], np.int64(-1), np.int64(-1))
         seen[:] = -1
         if facts.visit[v, TIMED] == 0:
             found = _plain_place(facts, rows, v, seen, blink, stream)

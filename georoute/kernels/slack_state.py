@@ -134,7 +134,7 @@ def write_row(facts: Facts, rows: Rows, s: Int, order: NDArray[np.int64]) -> Non
 
 @kernel
 def insert(facts: Facts, rows: Rows, s: Int, k: Int, v: Int) -> None:
-    """Put visit ``v`` into column ``k`` (1 .. count + 1) of row ``s``; its money stays to be set."""
+    """Put visit ``v`` into column ``k`` (1 .. count + 1) of row ``s``, but for its money."""
     total = rows.sum[s]
     n = total[COUNT]
     c = facts.shift[s, RATE_CLASS]

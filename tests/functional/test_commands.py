@@ -179,7 +179,7 @@ def test_a_killed_run_leaves_the_previous_plan_whole(planned: Path, tmp_path: Pa
     folder = copy_demo(tmp_path)
     before = (planned / "plan.gpkg").read_bytes()
     (folder / "plan.gpkg").write_bytes(before)
-    moments = random.Random(7)
+    moments = random.Random(7)  # noqa: S311 - moments of a test, no secret
     for seed in range(10):
         running = start(folder, "--seed", str(seed), "--effort", "quick")
         time.sleep(moments.uniform(0.5, 6.0))

@@ -71,19 +71,19 @@ class Book(NamedTuple):
 
 
 @kernel
-def _broken(clockwork: Clockwork, facts: Facts, rows: Rows, s: Int) -> bool | np.bool_:
-    """Tell whether what was taken out left row ``s`` against a limit.
+def _broken(clockwork: Clockwork, facts: Facts, rows: Rows, s: Int) -> Int:
+    """Return 1 where what was taken out left row ``s`` against a limit, else 0.
 
     Only where travel breaks the triangle inequality, or a leg does not exist.
     """
     if rows.sum[s, COUNT] == 0:
-        return False
+        return np.int64(0)
     if rows.sum[s, WINDOWED] > 0:
-        return breaks_a_limit(clockwork, rows, s)
+        return np.int64(breaks_a_limit(clockwork, rows, s))
     duration = rows.sum[s, DRIVE] + rows.sum[s, WORKED] + facts.shift[s, WRITE_UP]
     if rows.sum[s, DRIVE] >= UNREACHABLE:
-        return True
-    return duration > facts.shift[s, ROOM]
+        return np.int64(1)
+    return np.int64(duration > facts.shift[s, ROOM])
 
 
 @kernel
@@ -112,7 +112,7 @@ def _take_back(rows: Rows, backup: Rows, book: Book) -> None:
 
 
 @kernel
-def _wanted(book: Book, value: Int, n_absent: Int, slack: Float) -> bool:
+def _wanted(book: Book, value: Int, n_absent: Int, slack: Float) -> bool | np.bool_:
     """Decide whether the changed state replaces the one at hand."""
     if value < book.sums[0] + book.sums[1] + slack:
         return True
@@ -171,16 +171,16 @@ def anneal(
             stream,
         )
         money = sums[0]
-        broken = False
+        broken = np.int64(0)
         for i in range(1, touch[0] + 1):
             s = touch[i]
             money += rows.sum[s, MONEY] - backup.sum[s, MONEY]
-            broken = broken or _broken(clockwork, facts, rows, s)
+            broken += _broken(clockwork, facts, rows, s)
         lost = np.int64(0)
         for k in range(n_absent):
             lost += facts.visit[absent[k], WORTH]
         slack = -warmth * np.log(1.0 - uniform(stream))
-        if broken or not _wanted(book, money + lost, n_absent, slack):
+        if broken > 0 or not _wanted(book, money + lost, n_absent, slack):
             _take_back(rows, backup, book)
             continue
         for i in range(1, touch[0] + 1):

@@ -18,6 +18,8 @@ __all__ = [
     "Rows",
     "close_row",
     "insert",
+    "is_touched",
+    "plain_money",
     "rows_of",
     "save_row",
     "take_back_row",

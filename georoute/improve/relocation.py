@@ -8,6 +8,7 @@ import numpy as np
 
 from georoute.domain.run import never_stop, no_progress
 from georoute.improve.moves import Move, RelocateResult, read_move
+from georoute.improve.prime import prime
 from georoute.improve.state import make_step
 from georoute.kernels.board import COUNT, FITS, INFEASIBLE, MONEY, RANK, WHERE, WINDOWED
 from georoute.kernels.day_step import begin_step, keep_step, step_in, step_out, undo_step
@@ -36,7 +37,7 @@ if TYPE_CHECKING:
 __all__ = ["relocate"]
 
 MICRO = 1_000_000
-WORK_PER_CALL = 60_000
+WORK_PER_CALL = 20_000
 """Positions judged between two looks at the clock: some milliseconds."""
 WIDE_UP_TO = 600
 """Up to so many visits every search for a place goes through all tours."""
@@ -193,7 +194,7 @@ class _Relocation:
         for s in np.argsort(self.board.tour[:, COUNT], kind="stable"):
             # A day so full that emptying it would take long does not pay to close.
             busy = int(self.board.tour[s, COUNT])
-            if busy > 0 and busy * self.scan <= 16 * WORK_PER_CALL:
+            if busy > 0 and busy * self.scan <= 50 * WORK_PER_CALL:
                 if close_day(self.board, self.step, s, spare, self.wide):
                     self.keep("close_day")
                 self.look()
@@ -293,6 +294,7 @@ def relocate(
         Orders that keep every limit, whenever the search ends, also on an interrupt from the
         keyboard.
     """
+    prime()
     state = _Relocation(problem, solution, should_stop)
     stopped = False
     try:

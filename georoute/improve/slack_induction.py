@@ -79,7 +79,10 @@ class _Search:
 
     def __init__(self, problem: Problem, solution: Solution, seed: int) -> None:
         count, number = problem.shift_count, problem.visit_count
-        self.clockwork = Clockwork(problem.travel, problem.visits, problem.shifts)
+        windowed = problem.visits.window_open_ms.shape[0] > 0
+        self.clockwork = (
+            Clockwork(problem.travel, problem.visits, problem.shifts) if windowed else None
+        )
         self.facts = facts_of(problem)
         self.guide = guide_of(problem, self.facts)
         width = max(widest_tour(problem), *(order.shape[0] for order in solution.orders))
@@ -88,7 +91,8 @@ class _Search:
         self.stream = new_stream(seed, 0)
         for s, order in enumerate(solution.orders):
             write_row(self.facts, self.rows, s, order)
-            price_by_clock(self.clockwork, self.rows, s)
+            if self.clockwork is not None:
+                price_by_clock(self.clockwork, self.rows, s)
         absent = solution.unplaced(number)
         money = self.rows.sum[:, MONEY].sum()
         lost = self.worth[absent].sum()

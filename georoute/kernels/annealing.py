@@ -71,14 +71,14 @@ class Book(NamedTuple):
 
 
 @kernel
-def _broken(clockwork: Clockwork, facts: Facts, rows: Rows, s: Int) -> Int:
+def _broken(clockwork: Clockwork | None, facts: Facts, rows: Rows, s: Int) -> Int:
     """Return 1 where what was taken out left row ``s`` against a limit, else 0.
 
     Only where travel breaks the triangle inequality, or a leg does not exist.
     """
     if rows.sum[s, COUNT] == 0:
         return np.int64(0)
-    if rows.sum[s, WINDOWED] > 0:
+    if clockwork is not None and rows.sum[s, WINDOWED] > 0:
         return np.int64(breaks_a_limit(clockwork, rows, s))
     duration = rows.sum[s, DRIVE] + rows.sum[s, WORKED] + facts.shift[s, WRITE_UP]
     if rows.sum[s, DRIVE] >= UNREACHABLE:
@@ -128,16 +128,8 @@ def _wanted(book: Book, value: Int, n_absent: Int, slack: Float) -> bool | np.bo
 
 
 @kernel
-def _price_strings(clockwork: Clockwork, rows: Rows, touch: NDArray[np.int64]) -> None:
-    """Price the ruined rows by the clock where windows matter."""
-    if clockwork.visits.window_open_ms.shape[0] > 0:
-        for i in range(1, touch[0] + 1):
-            price_by_clock(clockwork, rows, touch[i])
-
-
-@kernel
 def anneal(
-    clockwork: Clockwork,
+    clockwork: Clockwork | None,
     facts: Facts,
     rows: Rows,
     backup: Rows,
@@ -147,7 +139,10 @@ def anneal(
     warmth: Float,
     stream: NDArray[np.uint64],
 ) -> None:
-    """Do ``steps`` rounds of ruin and recreate at temperature ``warmth`` (micro-units of money)."""
+    """Do ``steps`` rounds of ruin and recreate at temperature ``warmth`` (micro-units of money).
+
+    ``clockwork`` is ``None`` where no visit has windows.
+    """
     absent, touch, sums = book.absent, book.touch, book.sums
     for _ in range(steps):
         n_absent = sums[2]
@@ -155,7 +150,9 @@ def anneal(
             book.absent_before[k] = absent[k]
         touch[0] = 0
         n_absent = ruin(facts, rows, guide.near, absent, n_absent, touch, backup, stream)
-        _price_strings(clockwork, rows, touch)
+        if clockwork is not None:
+            for i in range(1, touch[0] + 1):
+                price_by_clock(clockwork, rows, touch[i])
         n_absent = recreate(
             clockwork,
             facts,

@@ -39,7 +39,7 @@ LOG_RESERVE = 64
 
 
 def new_chain(breadth: tuple[int, ...]) -> Ints:
-    """Return scratch for chains with ``breadth[k]`` alternatives at depth k."""
+    """Return scratch for chains with ``breadth[k]`` alternatives at depth k, all at the last."""
     chain = np.zeros((len(breadth), 5 + 3 * max(breadth)), np.int64)
     chain[:, 4] = breadth
     return chain
@@ -97,6 +97,56 @@ def _push_chain(queue: Ints, chain: Ints, level: Int, t1: Int) -> None:
 
 
 @kernel
+def _last_exchange(
+    table: Ints,
+    points: Floats,
+    price: Floats,
+    tour: Ints,
+    near: Ints,
+    t1: Int,
+    t2: Int,
+    t3: Int,
+    t4: Int,
+    gain: Int,
+) -> tuple[Int, Int, Int]:
+    """Return gain, t5 and t6 of the best exchange that closes after t1-t2, t3-t4 went.
+
+    The exchange before is only imagined: within the stretch t2..t4 the tour would run the other
+    way.
+    """
+    n = tour.shape[1]
+    forward = next_of(tour, t1) == t2
+    base = tour[1, t2]
+    span = tour[1, t4] - base if forward else base - tour[1, t4]
+    if span < 0:
+        span += n
+    best: Int = np.int64(0)
+    best5: Int = np.int64(-1)
+    best6: Int = np.int64(-1)
+    for k in range(near.shape[1]):
+        rest = gain - near[t4, k, 1]
+        if rest <= 0:
+            break
+        t5 = near[t4, k, 0]
+        at = tour[1, t5] - base if forward else base - tour[1, t5]
+        if at < 0:
+            at += n
+        if t5 == t3:
+            t6 = t2
+        elif forward == (at <= span):
+            t6 = next_of(tour, t5)
+        else:
+            t6 = prev_of(tour, t5)
+        if t5 == t1 or t6 == t4:
+            continue
+        closed = rest + leg_money(table, points, price, t5, t6)
+        closed -= leg_money(table, points, price, t6, t1)
+        if closed > best:
+            best, best5, best6 = closed, t5, t6
+    return best, best5, best6
+
+
+@kernel
 def _try_chain(
     table: Ints,
     points: Floats,
@@ -110,7 +160,10 @@ def _try_chain(
     t2: Int,
     depth: Int,
 ) -> Int:
-    """Try chains of exchanges that begin by removing t1-t2; make the first with a gain."""
+    """Try chains of up to ``depth`` + 1 exchanges that begin by removing t1-t2.
+
+    The first that gains is made.
+    """
     level = 0
     chain[0, 2] = t2
     chain[0, 3] = leg_money(table, points, price, t1, t2)
@@ -124,19 +177,31 @@ def _try_chain(
             undo(tour, log, log[0, 0] - 1)
             continue
         chain[level, 1] = choice + 1
+        t3 = chain[level, 5 + 3 * choice]
         t4 = chain[level, 6 + 3 * choice]
         gain = chain[level, 7 + 3 * choice]
         closed = gain - leg_money(table, points, price, t4, t1)
-        if closed <= 0 and level + 1 >= depth:
-            continue
+        t6: Int = np.int64(-1)
+        if closed <= 0:
+            if level + 1 < depth:
+                exchange(tour, log, t1, chain[level, 2], t4)
+                level += 1
+                chain[level, 2] = t4
+                chain[level, 3] = gain
+                _candidates(table, points, price, tour, near, chain, level, t1)
+                continue
+            closed, t5, t6 = _last_exchange(
+                table, points, price, tour, near, t1, chain[level, 2], t3, t4, gain
+            )
+            if closed <= 0:
+                continue
+            push(queue, t5)
+            push(queue, t6)
         exchange(tour, log, t1, chain[level, 2], t4)
-        if closed > 0:
-            _push_chain(queue, chain, level, t1)
-            return closed
-        level += 1
-        chain[level, 2] = t4
-        chain[level, 3] = gain
-        _candidates(table, points, price, tour, near, chain, level, t1)
+        if t6 >= 0:
+            exchange(tour, log, t1, t4, t6)
+        _push_chain(queue, chain, level, t1)
+        return closed
 
 
 @kernel

@@ -190,7 +190,7 @@ def _draw_order(
 
 @kernel
 def recreate(
-    clockwork: Clockwork,
+    clockwork: Clockwork | None,
     facts: Facts,
     rows: Rows,
     keys: NDArray[np.float64],
@@ -205,12 +205,12 @@ def recreate(
 ) -> Int:
     """Put absent visits back; return how many stay absent (moved to the front of ``absent``).
 
+    ``clockwork`` is ``None`` where no visit has windows: the compiler then leaves that part out.
     ``keys`` (float64, (R, V)): orders to take the visits in, drawn with the cumulative
     ``weights`` (R,). ``blink`` (1,): places to the next blink. ``seen``: scratch, one per kind
     of shift and pass.
     """
     _draw_order(keys, weights, absent, n_absent, stream)
-    any_window = clockwork.visits.window_open_ms.shape[0] > 0
     left = np.int64(0)
     for i in range(n_absent):
         v = absent[i]
@@ -218,7 +218,7 @@ def recreate(
         seen[:] = -1
         if facts.visit[v, TIMED] == 0:
             found = _plain_place(facts, rows, v, seen, blink, stream)
-        if any_window:
+        if clockwork is not None:
             found = _windowed_place(clockwork, facts, rows, v, found, seen)
         rise, s, column = found
         if s < 0:

@@ -13,7 +13,7 @@ from georoute.domain.plan import ReasonCode
 from georoute.domain.run import Effort
 from georoute.improve import relocate
 from georoute.kernels.alone import shortest_ways
-from georoute.kernels.arrays import UNREACHABLE
+from georoute.kernels.arrays import UNREACHABLE, Visits
 from georoute.problem import Problem, Solution
 from georoute.problem.eligibility import WhyNot
 from georoute.problem.reasons import cannot_fit, explain_unplaced, fits_alone, reason_text
@@ -44,7 +44,10 @@ def easy(**visits: NDArray[np.int64]) -> Problem:
     problem.shifts.paid_ms[:] = 7 * HOUR
     problem.shifts.limit_ms[:] = 8 * HOUR
     problem.shifts.write_up_ms[:] = 20 * MIN
-    return replace(problem, visits=problem.visits._replace(**visits))
+    names = {"window_ptr", "window_open_ms", "window_close_ms"}
+    assert visits.keys() <= names
+    kept = problem.visits._asdict() | visits
+    return replace(problem, visits=Visits(**kept))
 
 
 def windows(*spans: tuple[int, int]) -> dict[str, NDArray[np.int64]]:

@@ -17,6 +17,8 @@ from georoute.problem import Problem, Solution
 from georoute.timetable import solution_cost
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
     from numpy.typing import NDArray
 
     from georoute.domain.run import Effort, Progress, ShouldStop
@@ -41,37 +43,34 @@ class ImproveResult:
 
 
 class _Schedule:
-    """How far the search is, 0 to 1: by steps, or by time where seconds are given."""
+    """How far the search is, 0 to 1: by its steps, or by the caller's budget in time."""
 
-    def __init__(self, steps: int, seconds: float | None) -> None:
-        self.steps = steps
-        self.seconds = seconds
+    def __init__(self, steps: int, share_spent: Callable[[], float] | None) -> None:
         self.done = 0
-        self.chunk = FIRST_CHUNK
-        self._begin = time.thread_time()
+        self._steps = steps
+        self._share_spent = share_spent
+        self._chunk = FIRST_CHUNK
 
     @property
     def share(self) -> float:
-        if self.seconds is None:
-            return min(1.0, self.done / self.steps) if self.steps else 1.0
-        if self.seconds <= 0:
-            return 1.0
-        return min(1.0, (time.thread_time() - self._begin) / self.seconds)
+        if self._share_spent is not None:
+            return self._share_spent()
+        return self.done / self._steps if self._steps else 1.0
 
     def next_chunk(self) -> int:
-        """Return how many steps to do next; a budget of steps has chunks of one size.
+        """Return how many steps to do next.
 
-        The temperature is set per chunk, so chunks that depended on the clock would make the
-        result depend on it too.
+        The temperature is set per chunk, so without a budget in time all chunks are of one size:
+        chunks that depended on the clock would make the result depend on it too.
         """
-        if self.seconds is None:
-            return min(FIRST_CHUNK, self.steps - self.done)
-        return self.chunk
+        if self._share_spent is None:
+            return min(FIRST_CHUNK, self._steps - self.done)
+        return self._chunk
 
     def took(self, steps: int, seconds: float) -> None:
+        """Count steps that are done, and learn how many fit between two looks at the clock."""
         self.done += steps
-        if seconds > 0:
-            self.chunk = int(np.clip(steps * CHUNK_S / seconds, 1, 100_000))
+        self._chunk = int(np.clip(steps * CHUNK_S / max(seconds, 1e-9), 1, 100_000))
 
 
 class _Search:
@@ -146,7 +145,7 @@ def _value(problem: Problem, solution: Solution, worth: NDArray[np.int64]) -> in
     return solution_cost(problem, solution) + lost
 
 
-def improve(
+def improve(  # noqa: PLR0913 - a budget is several plain values
     problem: Problem,
     solution: Solution,
     *,
@@ -154,13 +153,14 @@ def improve(
     seed: int,
     progress: Progress,
     should_stop: ShouldStop,
+    share_spent: Callable[[], float] | None = None,
 ) -> ImproveResult:
     """Improve all days together, from any feasible solution, never to a worse one.
 
     Money decides: tours by the tariff plus the worth of what is left out, visits of higher rank
-    first. Without ``effort.seconds`` the search does ``effort.improve_steps`` steps per visit
-    and is the same on every run; with it, it cools over that time. ``should_stop`` ends it at
-    once with the best found so far.
+    first. The search does ``effort.improve_steps`` steps per visit and is the same on every run;
+    with ``share_spent``, which tells the share, 0 to 1, of a budget in time that is used, it
+    cools and ends by that instead. ``should_stop`` ends it at once with the best so far.
 
     J. Christiaens, G. Vanden Berghe, "Slack induction by string removals for vehicle routing
     problems", Transportation Science 54 (2020) 417-433.
@@ -168,7 +168,7 @@ def improve(
     if problem.visit_count == 0 or problem.shift_count == 0:
         return ImproveResult(solution=solution, steps=0)
     search = _Search(problem, solution, seed)
-    schedule = _Schedule(effort.improve_steps * problem.visit_count, effort.seconds)
+    schedule = _Schedule(effort.improve_steps * problem.visit_count, share_spent)
     search.step(1, 0.0)
     hot = HOT * search.mean_leg
     while (share := schedule.share) < 1.0 and not should_stop():

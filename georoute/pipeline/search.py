@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from georoute.improve import relocate
+from georoute.improve import improve, relocate
 from georoute.pipeline.exchange_log import ExchangeLog
 from georoute.problem import Solution
 from georoute.sequence import sequence_tour
@@ -26,8 +26,8 @@ if TYPE_CHECKING:
 __all__ = ["Found", "search"]
 
 MICRO = 1_000_000
-ROUNDS = 6
-"""Orders and days are improved in turn; on registers tried, later rounds change nothing."""
+TOGETHER_SHARE = 0.95
+"""Share of a limit in seconds after which days are left as they are, and put in order."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -90,18 +90,33 @@ class _Search:
             self.orders[shift] = found.order
             self.log.add(shift, "order", found.order)
 
-    def days(self, *, budget: Budget, round_number: int) -> list[int]:
-        """Move visits between days; return the shifts whose visits changed."""
-        before = self.orders
-        result = relocate(
+    def fit(self, *, budget: Budget) -> None:
+        """Move visits between days until every limit holds; leave out what fits nowhere."""
+        found = relocate(
             self.problem,
             self.solution,
             effort=self.effort,
-            seed=self.seed + round_number,
+            seed=self.seed,
             progress=self.progress,
             should_stop=budget,
         )
-        self.orders = list(result.solution.orders)
+        self._take(found.solution)
+
+    def together(self, *, budget: Budget) -> list[int]:
+        """Improve all days together; return the shifts whose visits changed."""
+        found = improve(
+            self.problem,
+            self.solution,
+            effort=self.effort,
+            seed=self.seed,
+            progress=self.progress,
+            should_stop=budget,
+            share_spent=(lambda: budget.share_spent() / TOGETHER_SHARE) if budget.timed else None,
+        )
+        return self._take(found.solution)
+
+    def _take(self, solution: Solution) -> list[int]:
+        before, self.orders = self.orders, list(solution.orders)
         touched = [
             s
             for s, (old, new) in enumerate(zip(before, self.orders, strict=True))
@@ -117,25 +132,16 @@ def search(
 ) -> Found:
     """Find days and orders for all visits; the result keeps every limit.
 
-    Without a limit in seconds the search ends when orders and days no longer improve or the
-    rounds are used; with one it goes on until the seconds are used. In either case it ends at
-    once, with the best found so far, when the budget says so.
+    Without a limit in seconds the work is counted in steps and the same on every run. The search
+    ends early, with the best found so far, when the budget says so.
     """
     state = _Search(packed, effort, seed, progress)
     state.split()
     state.order(range(len(state.orders)), budget=budget, round_number=0)
     state.note("order")
-    round_number = 0
-    while True:
-        round_number += 1
-        touched = state.days(budget=budget, round_number=round_number)
-        timed = effort.seconds is not None
-        if budget() or (not touched and not timed):
-            break
-        again = range(len(state.orders)) if timed else touched
-        state.order(again, budget=budget, round_number=round_number)
-        if not timed and round_number >= ROUNDS:
-            break
+    state.fit(budget=budget)
+    touched = state.together(budget=budget)
+    state.order(touched, budget=budget, round_number=1)
     state.note("days together")
     progress("days", fraction=1.0)
     return Found(solution=state.solution, log=state.log, stages=tuple(state.stages))

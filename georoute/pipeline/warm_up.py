@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from georoute.domain.run import never_stop, no_progress
-from georoute.improve import relocate
+from georoute.improve import improve, relocate
 from georoute.problem import Problem, Solution
 from georoute.sequence import sequence_tour
 
@@ -59,6 +59,14 @@ def warm_up(problem: Problem, effort: Effort) -> None:
         corner,
         solution,
         effort=replace(effort, relocation_rounds=1),
+        seed=0,
+        progress=no_progress,
+        should_stop=never_stop,
+    )
+    improve(
+        corner,
+        Solution(orders=tuple(nothing for _ in range(count))),
+        effort=replace(effort, improve_steps=2),
         seed=0,
         progress=no_progress,
         should_stop=never_stop,

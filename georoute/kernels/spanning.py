@@ -6,14 +6,15 @@ import numpy as np
 from numpy.typing import NDArray
 
 from georoute.kernels._jit import Int, kernel
-from georoute.kernels.arrays import UNREACHABLE, Travel, leg_ms
+from georoute.kernels.arrays import UNREACHABLE, Travel
+from georoute.kernels.board import leg
 
 __all__ = ["half_legs_ms", "spanning_tree_ms"]
 
 
 @kernel
-def _either_way(travel: Travel, i: Int, j: Int) -> Int:
-    return min(leg_ms(travel, i, j), leg_ms(travel, j, i))
+def _plane_of(travel: Travel) -> NDArray[np.float64]:
+    return np.array([travel.time_scale, travel.length_scale, float(travel.step)])
 
 
 @kernel
@@ -23,13 +24,15 @@ def spanning_tree_ms(travel: Travel, places: NDArray[np.int64], bases: NDArray[n
     An edge costs the cheaper of its two directions. Places that no edge reaches are left out.
     Prim's algorithm on the whole table.
     """
+    time, x, y, plane = travel.time_ms, travel.x, travel.y, _plane_of(travel)
     n = places.shape[0]
     gap = np.full(n, UNREACHABLE, np.int64)
-    for k in range(n):
-        for b in bases:
-            gap[k] = min(gap[k], _either_way(travel, places[k], b))
-    total = np.int64(0)
     inside = np.zeros(n, np.bool_)
+    for b in bases:
+        for k in range(n):
+            p = places[k]
+            gap[k] = min(gap[k], leg(time, x, y, plane, 0, p, b), leg(time, x, y, plane, 0, b, p))
+    total = np.int64(0)
     for _ in range(n):
         pick = -1
         for k in range(n):
@@ -39,9 +42,14 @@ def spanning_tree_ms(travel: Travel, places: NDArray[np.int64], bases: NDArray[n
             break
         inside[pick] = True
         total += gap[pick]
+        p = places[pick]
         for k in range(n):
             if not inside[k]:
-                gap[k] = min(gap[k], _either_way(travel, places[pick], places[k]))
+                q = places[k]
+                way = leg(time, x, y, plane, 0, p, q)
+                if time.shape[0] > 0:
+                    way = min(way, time[q, p])
+                gap[k] = min(gap[k], way)
     return total
 
 
@@ -51,20 +59,24 @@ def half_legs_ms(travel: Travel, places: NDArray[np.int64], bases: NDArray[np.in
 
     From and to the other ``places`` and the ``bases``; legs that do not exist count nothing.
     """
+    time, x, y, plane = travel.time_ms, travel.x, travel.y, _plane_of(travel)
     n = places.shape[0]
-    twice = np.int64(0)
-    for k in range(n):
-        into: Int = np.int64(UNREACHABLE)
-        out: Int = np.int64(UNREACHABLE)
+    into = np.full(n, UNREACHABLE, np.int64)
+    out = np.full(n, UNREACHABLE, np.int64)
+    for i in range(n):
+        p = places[i]
         for b in bases:
-            into = min(into, leg_ms(travel, b, places[k]))
-            out = min(out, leg_ms(travel, places[k], b))
-        for i in range(n):
-            if i != k:
-                into = min(into, leg_ms(travel, places[i], places[k]))
-                out = min(out, leg_ms(travel, places[k], places[i]))
-        if into < UNREACHABLE:
-            twice += into
-        if out < UNREACHABLE:
-            twice += out
+            into[i] = min(into[i], leg(time, x, y, plane, 0, b, p))
+            out[i] = min(out[i], leg(time, x, y, plane, 0, p, b))
+        for k in range(n):
+            if k != i:
+                way = leg(time, x, y, plane, 0, p, places[k])
+                out[i] = min(out[i], way)
+                into[k] = min(into[k], way)
+    twice = np.int64(0)
+    for i in range(n):
+        if into[i] < UNREACHABLE:
+            twice += into[i]
+        if out[i] < UNREACHABLE:
+            twice += out[i]
     return twice // 2

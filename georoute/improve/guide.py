@@ -7,15 +7,16 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from georoute.kernels.annealing import Guide
-from georoute.kernels.arrays import MUST, UNREACHABLE
+from georoute.kernels.arrays import UNREACHABLE
 from georoute.kernels.slack_state import Facts
+from georoute.problem.board import losses
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from georoute.problem import Problem
 
-__all__ = ["facts_of", "guide_of", "ranked_worth", "widest_tour"]
+__all__ = ["facts_of", "guide_of", "ranked_loss"]
 
 NO_LEG = 1 << 52
 """Money of a leg that does not exist: dearer than any tour, and safe to add up."""
@@ -58,7 +59,7 @@ def facts_of(problem: Problem) -> Facts:
         visits.place,
         visits.work_ms,
         visits.load,
-        ranked_worth(problem),
+        ranked_loss(problem),
         has_windows,
     )
     return Facts(
@@ -72,32 +73,23 @@ def facts_of(problem: Problem) -> Facts:
     )
 
 
-def ranked_worth(problem: Problem) -> NDArray[np.int64]:
-    """Return a worth of each visit whose sums never overflow and respect the ranks.
+def ranked_loss(problem: Problem) -> NDArray[np.int64]:
+    """Return what is lost with each visit, in one figure whose sums keep the ranks.
 
-    The visits of the last rank keep their worth in money (at most a share of what int64 holds);
-    one visit of a higher rank outweighs all visits of the ranks below it.
+    The classes of ``losses`` share the bits of an int64: all of one class together weigh less
+    than one visit of the class before it. Where the worths of a class need more bits than its
+    share they are told apart more coarsely.
     """
-    count = problem.visit_count
-    cap = (1 << 61) // max(1, count)
-    worth = np.minimum(problem.visits.worth, cap)
-    above = 0
-    for level in np.unique(problem.visits.level)[::-1]:
-        of_level = (problem.visits.level == level) | (problem.visits.worth >= MUST)
-        if above:
-            worth[of_level] = np.minimum(np.maximum(worth[of_level], above), cap)
-        above = min(cap, int(worth[problem.visits.level == level].sum()) + 1 + above)
-    return worth
-
-
-def widest_tour(problem: Problem) -> int:
-    """Return how many stops a tour that fits can have at the most."""
-    count = problem.visit_count
-    longest = int(problem.shifts.limit_ms.max(initial=0))
-    by_work = np.searchsorted(np.cumsum(np.sort(problem.visits.work_ms)), longest, side="right")
-    most_load = int(problem.shifts.load_limit.max(initial=0))
-    by_load = np.searchsorted(np.cumsum(np.sort(problem.visits.load)), most_load, side="right")
-    return min(count, int(by_work), int(by_load))
+    kind, amount, _ = losses(problem).T
+    classes = int(kind.max(initial=0)) + 1
+    bits = 60 // classes
+    loss = np.zeros(kind.shape[0], np.int64)
+    for rank in range(classes):
+        of_class = kind == rank
+        total = int(amount[of_class].sum())
+        coarser = max(0, total.bit_length() - (bits - 1))
+        loss[of_class] = np.maximum(1, amount[of_class] >> coarser) << (bits * (classes - 1 - rank))
+    return loss
 
 
 def _near(problem: Problem, facts: Facts) -> NDArray[np.int32]:

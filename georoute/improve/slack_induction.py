@@ -8,12 +8,13 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from georoute.improve.guide import facts_of, guide_of, widest_tour
+from georoute.improve.guide import facts_of, guide_of
 from georoute.kernels.annealing import Book, anneal
 from georoute.kernels.random_stream import new_stream
-from georoute.kernels.slack_state import COUNT, FARE, MONEY, STOP, WORTH, rows_of, write_row
+from georoute.kernels.slack_state import COUNT, FARE, LOSS, MONEY, STOP, rows_of, write_row
 from georoute.kernels.windowed_rows import Clockwork, price_by_clock
 from georoute.problem import Problem, Solution
+from georoute.problem.board import most_stops
 from georoute.timetable import solution_cost
 
 if TYPE_CHECKING:
@@ -84,7 +85,7 @@ class _Search:
         )
         self.facts = facts_of(problem)
         self.guide = guide_of(problem, self.facts)
-        width = max(widest_tour(problem), *(order.shape[0] for order in solution.orders))
+        width = max(most_stops(problem), *(order.shape[0] for order in solution.orders))
         self.rows = rows_of(count, number, width)
         self.backup = rows_of(count, 0, width)
         self.stream = new_stream(seed, 0)
@@ -94,7 +95,7 @@ class _Search:
                 price_by_clock(self.clockwork, self.rows, s)
         absent = solution.unplaced(number)
         money = self.rows.sum[:, MONEY].sum()
-        lost = self.worth[absent].sum()
+        lost = self.loss[absent].sum()
         spare = np.zeros(number, np.int64)
         self.book = Book(
             best_stop=self.rows.cell[STOP].copy(),
@@ -110,8 +111,8 @@ class _Search:
         )
 
     @property
-    def worth(self) -> NDArray[np.int64]:
-        return self.facts.visit[:, WORTH]
+    def loss(self) -> NDArray[np.int64]:
+        return self.facts.visit[:, LOSS]
 
     @property
     def mean_leg(self) -> float:
@@ -140,9 +141,9 @@ class _Search:
         )
 
 
-def _value(problem: Problem, solution: Solution, worth: NDArray[np.int64]) -> int:
-    lost = int(worth[solution.unplaced(problem.visit_count)].sum())
-    return solution_cost(problem, solution) + lost
+def _value(problem: Problem, solution: Solution, loss: NDArray[np.int64]) -> tuple[int, int]:
+    lost = int(loss[solution.unplaced(problem.visit_count)].sum())
+    return lost, solution_cost(problem, solution)
 
 
 def improve(  # noqa: PLR0913 - a budget is several plain values
@@ -157,10 +158,10 @@ def improve(  # noqa: PLR0913 - a budget is several plain values
 ) -> ImproveResult:
     """Improve all days together, from any feasible solution, never to a worse one.
 
-    Money decides: tours by the tariff plus the worth of what is left out, visits of higher rank
-    first. The search does ``effort.improve_steps`` steps per visit and is the same on every run;
-    with ``share_spent``, which tells the share, 0 to 1, of a budget in time that is used, it
-    cools and ends by that instead. ``should_stop`` ends it at once with the best so far.
+    What is left out comes first, by rank and then by worth; then money decides. The search does
+    ``effort.improve_steps`` steps per visit and is the same on every run; with ``share_spent``,
+    which tells the share, 0 to 1, of a budget in time that is used, it cools and ends by that
+    instead. ``should_stop`` ends it at once with the best so far.
 
     J. Christiaens, G. Vanden Berghe, "Slack induction by string removals for vehicle routing
     problems", Transportation Science 54 (2020) 417-433.
@@ -183,7 +184,6 @@ def improve(  # noqa: PLR0913 - a budget is several plain values
         search.step(steps, hot * (COLD / HOT) ** share)
         schedule.took(steps, time.perf_counter() - begin)
     found = search.best()
-    worth = search.worth
-    if _value(problem, found, worth) < _value(problem, solution, worth):
+    if _value(problem, found, search.loss) < _value(problem, solution, search.loss):
         solution = found
     return ImproveResult(solution=solution, steps=schedule.done)

@@ -20,13 +20,13 @@ from georoute.kernels.ruin import ruin
 from georoute.kernels.slack_state import (
     COUNT,
     DRIVE,
+    LOSS,
     MONEY,
     ROOM,
     STOP,
     WHERE,
     WINDOWED,
     WORKED,
-    WORTH,
     WRITE_UP,
     Facts,
     Rows,
@@ -53,8 +53,8 @@ class Book(NamedTuple):
 
     ``best_stop`` (S, W + 2), ``best_count`` (S,): the best tours. ``changed`` (S,): 1 where a
     tour differs from the best. ``absent``, ``absent_before`` (V,): absent visits. ``absences``
-    (V,): how often each was left absent. ``sums`` (6,): money now, worth lost now, number
-    absent now, money of the best, worth lost by the best, improvements. ``touch`` (S + 1,).
+    (V,): how often each was left absent. ``sums`` (6,): money now, loss now, number absent
+    now, money of the best, loss of the best, improvements. ``touch`` (S + 1,).
     ``seen`` (kinds,). ``blink`` (1,).
     """
 
@@ -112,12 +112,12 @@ def _take_back(rows: Rows, backup: Rows, book: Book) -> None:
 
 
 @kernel
-def _wanted(book: Book, value: Int, n_absent: Int, slack: Float) -> bool | np.bool_:
-    """Decide whether the changed state replaces the one at hand."""
-    if value < book.sums[0] + book.sums[1] + slack:
+def _wanted(book: Book, money: Int, lost: Int, n_absent: Int, slack: Float) -> bool | np.bool_:
+    """Decide whether the changed state replaces the one at hand: first by loss, then by money."""
+    if lost == book.sums[1]:
+        return money < book.sums[0] + slack
+    if lost < book.sums[1]:
         return True
-    if n_absent == 0 or book.sums[2] == 0:
-        return False
     now = np.int64(0)
     before = np.int64(0)
     for k in range(n_absent):
@@ -175,9 +175,9 @@ def anneal(
             broken += _broken(clockwork, facts, rows, s)
         lost = np.int64(0)
         for k in range(n_absent):
-            lost += facts.visit[absent[k], WORTH]
+            lost += facts.visit[absent[k], LOSS]
         slack = -warmth * np.log(1.0 - uniform(stream))
-        if broken > 0 or not _wanted(book, money + lost, n_absent, slack):
+        if broken > 0 or not _wanted(book, money, lost, n_absent, slack):
             _take_back(rows, backup, book)
             continue
         for i in range(1, touch[0] + 1):
@@ -187,5 +187,5 @@ def anneal(
         sums[2] = n_absent
         for k in range(n_absent):
             book.absences[absent[k]] += 1
-        if money + lost < sums[3] + sums[4]:
+        if lost < sums[4] or (lost == sums[4] and money < sums[3]):
             _keep_best(rows, book)

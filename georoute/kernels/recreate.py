@@ -2,9 +2,9 @@
 
 J. Christiaens, G. Vanden Berghe, "Slack induction by string removals for vehicle routing
 problems", Transportation Science 54 (2020) 417-433, section 4.2: greedy insertion with blinks.
-Differences from the paper: money decides, an empty shift competes with the others at the price
-of its day, and a visit stays out where putting it in costs more than it is worth. A blink is
-drawn only for places that would be taken: at any other it changes nothing.
+Differences from the paper: money decides, and an empty shift competes with the others at the
+price of its day. A blink is drawn only for places that would be taken: at any other it changes
+nothing.
 """
 
 from __future__ import annotations
@@ -37,14 +37,13 @@ from georoute.kernels.slack_state import (
     WINDOWED,
     WORK,
     WORKED,
-    WORTH,
     WRITE_UP,
     Facts,
     Rows,
     insert,
     save_row,
 )
-from georoute.kernels.windowed_rows import Clockwork, best_column
+from georoute.kernels.windowed_rows import INFEASIBLE, Clockwork, best_column
 
 __all__ = ["recreate"]
 
@@ -72,7 +71,7 @@ def _plain_place(
 ) -> Found:
     """Return (rise, shift, column) of the cheapest place for a visit without windows.
 
-    Only tours without windows are looked at; shift -1 where none is worth it. One long loop on
+    Only tours without windows are looked at; shift -1 where it fits nowhere. One long loop on
     purpose: a call for each tour would cost more than what it computes. ``seen`` (kinds,):
     the last visit that looked at an empty shift of this kind.
     """
@@ -81,7 +80,7 @@ def _plain_place(
     p = facts.visit[v, PLACE]
     work = facts.visit[v, WORK]
     load = facts.visit[v, LOAD]
-    best = facts.visit[v, WORTH]
+    best = np.int64(INFEASIBLE)
     best_shift = np.int64(-1)
     column = np.int64(-1)
     for s in range(total.shape[0]):
@@ -214,7 +213,7 @@ def recreate(
     left = np.int64(0)
     for i in range(n_absent):
         v = absent[i]
-        found: Found = (facts.visit[v, WORTH], np.int64(-1), np.int64(-1))
+        found: Found = (np.int64(INFEASIBLE), np.int64(-1), np.int64(-1))
         seen[:] = -1
         if facts.visit[v, TIMED] == 0:
             found = _plain_place(facts, rows, v, seen, blink, stream)

@@ -27,7 +27,7 @@ __all__ = [
 ]
 
 # Columns of Facts.visit
-PLACE, WORK, LOAD, WORTH, TIMED = 0, 1, 2, 3, 4
+PLACE, WORK, LOAD, LOSS, TIMED = 0, 1, 2, 3, 4
 # Columns of Facts.shift
 START, END, ROOM, PAID, WRITE_UP, LOAD_LIMIT, DAY_COST, RATE_CLASS, KIND = 0, 1, 2, 3, 4, 5, 6, 7, 8
 # Columns of Facts.rate
@@ -44,10 +44,11 @@ class Facts(NamedTuple):
     """What does not change. All int64 unless said otherwise.
 
     ``fare`` (C, P, P): money of a leg by class of rates. ``ms``, ``mm`` (P, P): its time and
-    length. ``visit`` (V, 5): place, work, load, worth, 1 where it has windows. ``shift`` (S, 9):
-    start, end, longest duration, paid length, write-up, load limit, cost of the day, class of
-    rates, and kind (empty shifts of one kind are worth the same to any visit). ``rate``
-    (float64, (S, 2)): price of a ms, and what overtime adds to it. ``eligible`` bool (V, S).
+    length. ``visit`` (V, 5): place, work, load, loss when absent, 1 where it has windows.
+    ``shift`` (S, 9): start, end, longest duration, paid length, write-up, load limit, cost of
+    the day, class of rates, and kind (empty shifts of one kind are worth the same to any visit).
+    ``rate`` (float64, (S, 2)): price of a ms, and what overtime adds to it. ``eligible``:
+    bool (V, S).
     """
 
     fare: NDArray[np.int64]

@@ -12,9 +12,10 @@ from georoute.kernels.arrays import Shifts, Travel, Visits
 from georoute.kernels.clock import time_tour, tour_cost
 from georoute.kernels.slack_state import COUNT, MONEY, STOP, WINDOWED, Rows
 
-__all__ = ["Clockwork", "best_column", "breaks_a_limit", "price_by_clock"]
+__all__ = ["INFEASIBLE", "Clockwork", "best_column", "breaks_a_limit", "price_by_clock"]
 
-INFEASIBLE = 1 << 62
+INFEASIBLE = 1 << 60
+"""Money of what breaks a limit."""
 
 
 class Clockwork(NamedTuple):
@@ -66,8 +67,8 @@ def best_column(clockwork: Clockwork, rows: Rows, s: Int, v: Int, best: Int) -> 
         if k > 1:
             order[k - 2] = rows.cell[STOP, s, k - 1]
         order[k - 1] = v
-        rise = _price(clockwork, s, order) - rows.sum[s, MONEY]
-        if rise < best:
-            best = rise
+        price = _price(clockwork, s, order)
+        if price < INFEASIBLE and price - rows.sum[s, MONEY] < best:
+            best = price - rows.sum[s, MONEY]
             column = np.int64(k)
     return best, column

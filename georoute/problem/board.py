@@ -16,7 +16,7 @@ if TYPE_CHECKING:
 
     from georoute.problem.arrays import Problem
 
-__all__ = ["make_board", "solution_of"]
+__all__ = ["losses", "make_board", "most_stops", "solution_of"]
 
 NEIGHBOURS = 24
 
@@ -26,7 +26,7 @@ def _most(sizes: NDArray[np.int64], room: int) -> int:
     return int(np.searchsorted(np.cumsum(sizes), room, side="right"))
 
 
-def _most_stops(problem: Problem) -> int:
+def most_stops(problem: Problem) -> int:
     """Return a number of stops that no tour within its limits can exceed."""
     visits, shifts = problem.visits, problem.shifts
     usable = np.minimum(shifts.limit_ms, shifts.close_ms - shifts.open_ms) - shifts.write_up_ms
@@ -59,7 +59,7 @@ def _near(problem: Problem, neighbours: int) -> NDArray[np.int64]:
     return near
 
 
-def _losses(problem: Problem) -> NDArray[np.int64]:
+def losses(problem: Problem) -> NDArray[np.int64]:
     """Return class, amount and rank of the loss when each visit is left out: (V, 3).
 
     Visits worth ``MUST`` are a class of their own, before all levels, and each counts as one.
@@ -82,7 +82,7 @@ def _visit_table(problem: Problem) -> NDArray[np.int64]:
         visits.window_ptr[:-1],
         visits.window_ptr[1:],
     ]
-    return np.ascontiguousarray(np.column_stack([*columns, _losses(problem)]).astype(np.int64))
+    return np.ascontiguousarray(np.column_stack([*columns, losses(problem)]).astype(np.int64))
 
 
 def _shift_table(problem: Problem) -> NDArray[np.int64]:
@@ -111,7 +111,7 @@ def make_board(problem: Problem, solution: Solution, *, neighbours: int = NEIGHB
     travel, shifts, visits = problem.travel, problem.shifts, problem.visits
     n_visits, n_shifts = problem.visit_count, problem.shift_count
     longest = max((order.shape[0] for order in solution.orders), default=0)
-    width = max(1, longest, _most_stops(problem))
+    width = max(1, longest, most_stops(problem))
     rates = [shifts.hour_rate, shifts.overtime_rate, shifts.length_rate]
     board = Board(
         time=np.ascontiguousarray(travel.time_ms),

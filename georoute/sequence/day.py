@@ -15,7 +15,7 @@ if TYPE_CHECKING:
 
     from georoute.problem import Problem
 
-__all__ = ["Day", "Rates", "gather"]
+__all__ = ["Day", "Rates", "gather", "leg_tables"]
 
 LARGEST_TABLE = 1_200
 """Nodes up to which points on a plane get a table: beyond it, on the fly is faster."""
@@ -110,17 +110,23 @@ def gather(problem: Problem, shift: int, order: NDArray[np.int64], *, rates: Rat
 
 def _money_table(travel: Travel, places: NDArray[np.int64], rates: Rates) -> NDArray[np.int64]:
     """Return the money of all legs between ``places``, each rounded once, int64 (n, n)."""
-    if travel.dense:
-        pairs = np.ix_(places, places)
-        time, length = travel.time_ms[pairs], travel.length_mm[pairs]
-    else:
-        time = _plane_ticks(travel, places, travel.time_scale)
-        length = _plane_ticks(travel, places, travel.length_scale)
+    time, length = leg_tables(travel, places)
     money = np.floor(rates.time * time + rates.length * length + 0.5)
     blocked = (time >= UNREACHABLE) | (length >= UNREACHABLE) | (money >= BLOCKED)
     table = np.where(blocked, 0.0, money).astype(np.int64)
     table[blocked] = BLOCKED
     return table
+
+
+def leg_tables(
+    travel: Travel, places: NDArray[np.int64]
+) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
+    """Return ``leg_ms`` and ``leg_mm`` between all ``places``, int64 (n, n) each."""
+    if travel.dense:
+        pairs = np.ix_(places, places)
+        return travel.time_ms[pairs], travel.length_mm[pairs]
+    time = _plane_ticks(travel, places, travel.time_scale)
+    return time, _plane_ticks(travel, places, travel.length_scale)
 
 
 def _plane_ticks(travel: Travel, places: NDArray[np.int64], scale: float) -> NDArray[np.int64]:

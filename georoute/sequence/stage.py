@@ -9,6 +9,7 @@ import numpy as np
 
 from georoute.domain.run import never_stop, no_progress
 from georoute.kernels.clock import TourTimes, time_tour, tour_cost
+from georoute.kernels.day_net import tour_money
 from georoute.kernels.random_stream import new_stream
 from georoute.problem import Solution
 from georoute.sequence.budget import KickBudget
@@ -32,6 +33,10 @@ __all__ = ["sequence", "sequence_tour"]
 MICRO = 1_000_000
 TRIED_WHOLE = 3
 """Visits up to which every order is tried."""
+
+
+LARGEST_BY_CLOCK = 2_000
+"""Visits up to which a day is searched by its times: its tables take 16 bytes a pair."""
 
 
 def _nothing_spent() -> float:
@@ -133,6 +138,7 @@ class _Attempt:
         self.keep_log = keep_log
         self.steps: list[Step] = []
         self.kicks = 0
+        self.at_cheapest = False
         self.times = self._clock(order)
         self.worth = self._worth(self.times)
 
@@ -186,11 +192,16 @@ class _Attempt:
             self._by_travel(Rates(time=overtime, length=length), budget())
         if length > 0.0 and self.worth[0] > 0:
             self._by_travel(Rates(time=1.0, length=0.0), budget())
-        if self.times.wait_ms > 0 or self.times.late_ms > 0:
+        on_time = self.times.wait_ms == 0 and self.times.late_ms == 0
+        if not (on_time and self.at_cheapest) and self.order.shape[0] <= LARGEST_BY_CLOCK:
             self._by_clock(budget())
 
     def _by_travel(self, rates: Rates, budget: KickBudget) -> None:
-        """Offer the cheapest order by the money of legs alone, in both directions."""
+        """Offer the cheapest order by the money of legs alone, in both directions.
+
+        An order that is cheapest by travel and waits nowhere cannot be bettered by its times:
+        ``at_cheapest`` tells whether the best order so far is as cheap to travel.
+        """
         day = gather(self.problem, self.shift, self.order, rates=rates)
         start = day.tour_of(self.order)
         trail = Trail(day.order_of, day.money, kept=self.keep_log)
@@ -200,6 +211,8 @@ class _Attempt:
         self.offer(found, trail.steps)
         if day.symmetric and not day.linked:
             self.offer(np.ascontiguousarray(found[::-1]), trail.steps)
+        least, here = (tour_money(*day.net, day.tour_of(way)) for way in (found, self.order))
+        self.at_cheapest = bool(here <= least)
 
     def _by_clock(self, budget: KickBudget) -> None:
         """Offer the best order found by the clock, from the better of two starts."""

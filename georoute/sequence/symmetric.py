@@ -23,8 +23,9 @@ if TYPE_CHECKING:
 __all__ = ["order_symmetric"]
 
 NEIGHBOURS = 8
-BREADTH = (5, 3, 2, 1, 1, 1)
-FIRST_DEPTH = 2
+BREADTH = (5, 3)
+"""Alternatives tried for each exchange of a chain; all neighbours for the one after these."""
+FIRST_DEPTH = 1
 """Depth of the first descent: exchanges of two or three legs, which a person can follow."""
 HEAT = 0.1
 """Temperature at the start, as a share of the mean leg."""

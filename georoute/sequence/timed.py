@@ -6,7 +6,6 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from georoute.kernels.arrays import leg_mm, leg_ms
 from georoute.kernels.node_queue import empty_queue, new_queue, waiting
 from georoute.kernels.timed import (
     descend_timed,
@@ -14,6 +13,7 @@ from georoute.kernels.timed import (
     price_timed,
 )
 from georoute.kernels.timed_moves import refresh_timed
+from georoute.sequence.day import leg_tables
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -166,11 +166,4 @@ def _legs(problem: Problem, shift: int, order: NDArray[np.int64]) -> NDArray[np.
     """Return ms and mm between the visits, the start and the end, int64 (2, m + 2, m + 2)."""
     ends = (problem.shifts.start_place[shift], problem.shifts.end_place[shift])
     places = np.concatenate((problem.visits.place[order], ends))
-    travel = problem.travel
-    if travel.dense:
-        pairs = np.ix_(places, places)
-        return np.stack((travel.time_ms[pairs], travel.length_mm[pairs]))
-    return np.array(
-        [[[leg(travel, i, j) for j in places] for i in places] for leg in (leg_ms, leg_mm)],
-        np.int64,
-    )
+    return np.stack(leg_tables(problem.travel, places))

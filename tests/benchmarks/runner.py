@@ -8,72 +8,30 @@ from __future__ import annotations
 
 import argparse
 import csv
-import json
+import math
 import os
-import statistics
 from collections.abc import Callable, Sequence
-from dataclasses import asdict, dataclass
+from dataclasses import dataclass
 from fnmatch import fnmatch
 from pathlib import Path
 
-from tests.benchmarks import tsplib
+from tests.benchmarks import capacitated, reference, tsplib
 from tests.benchmarks.engine import compile_once, solve
-from tests.benchmarks.instance import Instance, Tour
+from tests.benchmarks.instance import Instance
+from tests.benchmarks.records import OWN, Archive, Record, Row, closing
 
-__all__ = ["READERS", "Record", "Row", "chosen_instances", "main", "spread"]
+__all__ = ["READERS", "chosen_instances", "main", "spread"]
 
 READERS: dict[str, tuple[str, Callable[[Path], Instance]]] = {
     "tsplib95-tsp": ("*.tsp", tsplib.read),
     "tsplib95-atsp": ("*.atsp", tsplib.read),
+    "cmt-cvrp": ("*.vrp", capacitated.read_exact),
+    "golden-cvrp": ("*.vrp", capacitated.read_exact),
+    "uchoa-x-cvrp": ("*.vrp", capacitated.read_rounded),
 }
 """For each set the pattern of its instance files and their reader."""
 
 CORE = 6
-
-
-@dataclass(frozen=True, kw_only=True)
-class Record:
-    """One run: what is kept in the file of ``--json``."""
-
-    set: str
-    instance: str
-    size: int
-    seed: int
-    seconds: float
-    value: float
-    cpu_s: float
-    iterations: int
-    violations: tuple[str, ...]
-    tours: tuple[str, ...]
-
-
-@dataclass(frozen=True, kw_only=True)
-class Row:
-    """All runs of one instance against the best value known."""
-
-    instance: str
-    size: int
-    best_known: float
-    median: float
-    best: float
-    cpu_s: float
-    iterations: float
-    violations: int
-
-    @property
-    def gap(self) -> float:
-        """Per cent by which the median lies above the best value known."""
-        return 100.0 * (self.median / self.best_known - 1.0)
-
-    def text(self) -> str:
-        """Return the row as it is printed."""
-        best_gap = 100.0 * (self.best / self.best_known - 1.0)
-        return (
-            f"{self.instance:<12} n {self.size:>6}  best known {self.best_known:>12.10g}  "
-            f"median {self.median:>12.10g}  best {self.best:>12.10g}  gap {self.gap:7.3f} %  "
-            f"(best {best_gap:.3f} %)  {self.cpu_s:6.2f} CPU s  {self.iterations:9.0f} kicks  "
-            f"violations {self.violations}"
-        )
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -90,15 +48,12 @@ def main(arguments: Sequence[str] | None = None) -> int:
         print(f"{options.set}: no instance matches")
         return 2
     compile_once(instances[0].problem())
-    archive = _Archive(options.json)
-    rows = [_run_instance(instance, folder, options, archive) for instance in instances]
-    gaps = [row.gap for row in rows]
-    violations = sum(row.violations for row in rows)
-    print(
-        f"{options.set}: {len(rows)} instances, mean gap {statistics.mean(gaps):.3f} %, "
-        f"worst {max(gaps):.3f} %, violations {violations}"
-    )
-    return 1 if violations else 0
+    work = _Work(folder=folder, options=options, archive=Archive(options.json))
+    rows = [work.rows_of(instance) for instance in instances]
+    own, others = [pair[0] for pair in rows], [pair[1] for pair in rows if pair[1] is not None]
+    beside = f"; {reference.NAME} in the same seconds: {closing(others)}" if others else ""
+    print(f"{options.set}: {closing(own)}{beside}")
+    return 1 if any(row.violations for row in own) else 0
 
 
 def _options(arguments: Sequence[str] | None) -> argparse.Namespace:
@@ -110,6 +65,9 @@ def _options(arguments: Sequence[str] | None) -> argparse.Namespace:
     parser.add_argument("--core", action="store_true", help=f"up to {CORE} of them, spread out")
     parser.add_argument("--seconds", type=float, default=5.0, help="CPU seconds a run")
     parser.add_argument("--seeds", type=int, default=1, help="runs of each instance")
+    parser.add_argument(
+        "--reference", action="store_true", help=f"also run {reference.NAME}, once an instance"
+    )
     parser.add_argument("--solutions", type=Path, help="folder for the best solutions")
     parser.add_argument("--json", type=Path, help="keep all runs here; go on where it ends")
     return parser.parse_args(arguments)
@@ -136,38 +94,46 @@ def spread(items: list[Instance], count: int) -> list[Instance]:
     return [items[round(k * (len(items) - 1) / (count - 1))] for k in range(count)]
 
 
-def _run_instance(
-    instance: Instance, folder: Path, options: argparse.Namespace, archive: _Archive
-) -> Row:
-    records = []
-    for seed in range(options.seeds):
-        record = archive.find(options.set, instance.name, seed, options.seconds)
+@dataclass(frozen=True, kw_only=True)
+class _Work:
+    """The runs asked for, those already made, and where best-known values are."""
+
+    folder: Path
+    options: argparse.Namespace
+    archive: Archive
+
+    def rows_of(self, instance: Instance) -> tuple[Row, Row | None]:
+        """Run an instance, print its row, and return the rows of engine and reference."""
+        records = [self._record(instance, OWN, seed) for seed in range(self.options.seeds)]
+        if self.options.solutions is not None:
+            _write_solution(self.options.solutions, records)
+        rivals = [self._record(instance, reference.NAME, 0)] if self.options.reference else []
+        best_known = _best_known(self.folder, instance.name)
+        row = Row.of(records, best_known)
+        other = Row.of(rivals, best_known) if rivals else None
+        print(row.text() + (other.text_beside() if other else ""), flush=True)
+        return row, other
+
+    def _record(self, instance: Instance, solver: str, seed: int) -> Record:
+        seconds = self.options.seconds
+        key = (self.options.set, instance.name, solver, seed, seconds)
+        record = self.archive.find(key)
         if record is None:
-            record = _run(instance, options.set, seed=seed, seconds=options.seconds)
-            archive.add(record)
-        records.append(record)
-    best = min(records, key=lambda record: record.value)
-    if options.solutions is not None:
-        options.solutions.mkdir(parents=True, exist_ok=True)
-        path = options.solutions / f"{instance.name}.sol"
-        path.write_text("".join(f"{line}\n" for line in best.tours))
-    row = Row(
-        instance=instance.name,
-        size=instance.size,
-        best_known=_best_known(folder, instance.name),
-        median=statistics.median(record.value for record in records),
-        best=best.value,
-        cpu_s=statistics.median(record.cpu_s for record in records),
-        iterations=statistics.median(record.iterations for record in records),
-        violations=sum(len(record.violations) for record in records),
-    )
-    print(row.text(), flush=True)
-    return row
+            run = _run_own if solver == OWN else _run_reference
+            record = run(instance, self.options.set, seed, seconds)
+            self.archive.add(record)
+        return record
 
 
-def _run(instance: Instance, name: str, *, seed: int, seconds: float) -> Record:
+def _write_solution(folder: Path, records: Sequence[Record]) -> None:
+    best = min(records, key=lambda record: (len(record.violations), record.value))
+    folder.mkdir(parents=True, exist_ok=True)
+    (folder / f"{best.instance}.sol").write_text("".join(f"{line}\n" for line in best.tours))
+
+
+def _run_own(instance: Instance, name: str, seed: int, seconds: float) -> Record:
     run = solve(instance.problem(), seconds=seconds, seed=seed)
-    tours: tuple[Tour, ...] = instance.tours(run.solution)
+    tours = instance.tours(run.solution)
     return Record(
         set=name,
         instance=instance.name,
@@ -182,6 +148,24 @@ def _run(instance: Instance, name: str, *, seed: int, seconds: float) -> Record:
     )
 
 
+def _run_reference(instance: Instance, name: str, seed: int, seconds: float) -> Record:
+    run = reference.solve(instance.problem(), seconds=seconds)
+    tours = () if run.solution is None else instance.tours(run.solution)
+    return Record(
+        set=name,
+        instance=instance.name,
+        size=instance.size,
+        seed=seed,
+        seconds=seconds,
+        value=instance.cost(tours) if tours else math.inf,
+        cpu_s=run.cpu_s,
+        iterations=0,
+        violations=instance.violations(tours) if tours else (),
+        tours=tuple(tour.line() for tour in tours),
+        solver=reference.NAME,
+    )
+
+
 def _best_known(folder: Path, name: str) -> float:
     with (folder / "best_known.csv").open(newline="") as file:
         for row in csv.DictReader(file):
@@ -189,31 +173,3 @@ def _best_known(folder: Path, name: str) -> float:
                 return float(row["best_known"])
     msg = f"best_known.csv has no row for {name!r}"
     raise KeyError(msg)
-
-
-class _Archive:
-    """All runs so far, in a file if one is named."""
-
-    def __init__(self, path: Path | None) -> None:
-        self._path = path
-        self._records: list[Record] = []
-        if path is not None and path.exists():
-            for item in json.loads(path.read_text()):
-                lists = {key: tuple(item[key]) for key in ("violations", "tours")}
-                self._records.append(Record(**{**item, **lists}))
-
-    def find(self, name: str, instance: str, seed: int, seconds: float) -> Record | None:
-        """Return the run already made, if there is one."""
-        wanted = (name, instance, seed, seconds)
-        for record in self._records:
-            if (record.set, record.instance, record.seed, record.seconds) == wanted:
-                return record
-        return None
-
-    def add(self, record: Record) -> None:
-        """Keep a run; the file is replaced whole, so that a kill leaves the one before."""
-        self._records.append(record)
-        if self._path is not None:
-            new = self._path.with_suffix(self._path.suffix + ".new")
-            new.write_text(json.dumps([asdict(item) for item in self._records], indent=1))
-            new.replace(self._path)

@@ -20,7 +20,7 @@ from georoute.kernels.arrays import MUST, Shifts, Travel, Visits
 from georoute.problem import Problem, Solution
 from tests.benchmarks.instance import Instance, Tour
 
-__all__ = ["TsplibInstance", "parse", "read"]
+__all__ = ["ENDLESS", "UNIT", "TsplibInstance", "parse", "read"]
 
 UNIT = 1_000_000
 """Ticks of one unit of distance."""
@@ -30,6 +30,8 @@ RADIUS_KM = 6378.388
 SECTIONS = {
     "NODE_COORD_SECTION",
     "EDGE_WEIGHT_SECTION",
+    "DEMAND_SECTION",
+    "DEPOT_SECTION",
     "DISPLAY_DATA_SECTION",
     "FIXED_EDGES_SECTION",
     "TOUR_SECTION",

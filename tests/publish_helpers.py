@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 import random
 from collections.abc import Sequence
-from dataclasses import replace
+from dataclasses import dataclass, field, replace
 from datetime import date, datetime, time, timedelta
 from zoneinfo import ZoneInfo
 
@@ -243,61 +243,85 @@ def unplaced_visit(site: Site, task: str, code: ReasonCode, message: str) -> tup
     return visit, left
 
 
-def sample_plan(*, days: int = 1, people: int = 1, stops: int = 15, unplaced: int = 0) -> Plan:
-    """Return a plan of ``days`` x ``people`` tours."""
-    setting = programme(days=days, people=people)
-    sites: list[Site] = []
-    visits: list[Visit] = []
-    tours: list[DayTour] = []
+REASONS = (
+    (ReasonCode.CLOSED, "open 20:00-21:00 only; the shift ends at 18:00"),
+    (ReasonCode.TOO_FAR_FOR_SHIFT, "out and back 9 h 40 min + work 30 min > shift 9 h 30 min"),
+)
+
+
+@dataclass
+class Parts:
+    """What a sample is put together from."""
+
+    sites: list[Site] = field(default_factory=list)
+    visits: list[Visit] = field(default_factory=list)
+    tours: list[DayTour] = field(default_factory=list)
+    unplaced: list[Unplaced] = field(default_factory=list)
+
+
+def _add_tours(parts: Parts, setting: Programme, *, days: int, stops: int) -> None:
     for d in range(days):
         for p, person in enumerate(setting.inspectors):
             day = FIRST_DAY + timedelta(days=d)
             base = next(b for b in setting.bases if b.base_id == person.start_base_id)
             here = sites_around(base, count=stops, seed=100 * d + p, prefix=f"S{d}{p}")
             todo = [_visit(site, "yearly check", k, day) for k, site in enumerate(here)]
-            sites += here
-            visits += todo
-            tours.append(timed_tour(setting, person, day, here, todo))
-    left = []
-    reasons = (
-        (ReasonCode.CLOSED, "open 20:00-21:00 only; the shift ends at 18:00"),
-        (ReasonCode.TOO_FAR_FOR_SHIFT, "out and back 9 h 40 min + work 30 min > shift 9 h 30 min"),
-    )
-    for k in range(unplaced):
-        site = sites_around(setting.bases[0], count=1, seed=900 + k, prefix=f"U{k}")[0]
-        code, message = reasons[k % len(reasons)]
+            parts.sites += here
+            parts.visits += todo
+            parts.tours.append(timed_tour(setting, person, day, here, todo))
+
+
+def _add_unplaced(parts: Parts, base: Base, *, count: int) -> None:
+    for k in range(count):
+        site = sites_around(base, count=1, seed=900 + k, prefix=f"U{k}")[0]
+        code, message = REASONS[k % len(REASONS)]
         visit, entry = unplaced_visit(site, "yearly check", code, message)
-        sites.append(site)
-        visits.append(visit)
-        left.append(entry)
+        parts.sites.append(site)
+        parts.visits.append(visit)
+        parts.unplaced.append(entry)
+
+
+def _capacity(visits: list[Visit], shifts: int) -> Capacity:
+    return Capacity(
+        visits=len(visits),
+        shifts=shifts,
+        work_h=sum(visit.work_s + visit.access_s for visit in visits) / 3600,
+        least_travel_h=1.5 * shifts,
+        shift_h=8.5 * shifts,
+        overtime_h=1.0 * shifts,
+    )
+
+
+def _stages(parts: Parts) -> tuple[StageCost, ...]:
+    cost, visits = sum(tour.cost for tour in parts.tours), len(parts.visits)
+    return (
+        StageCost(stage="split", cost=cost * 1.21, placed=visits),
+        StageCost(stage="order", cost=cost * 1.06, placed=visits),
+        StageCost(stage="days together", cost=cost, placed=visits - len(parts.unplaced)),
+    )
+
+
+def sample_plan(*, days: int = 1, people: int = 1, stops: int = 15, unplaced: int = 0) -> Plan:
+    """Return a plan of ``days`` x ``people`` tours."""
+    setting = programme(days=days, people=people)
+    parts = Parts()
+    _add_tours(parts, setting, days=days, stops=stops)
+    _add_unplaced(parts, setting.bases[0], count=unplaced)
     return Plan(
         plan_id="5d0a1c3e-8f0b-4a52-9d5c-0d6f6c1f7a10",
         programme=setting,
-        sites=tuple(sites),
-        visits=tuple(visits),
-        tours=tuple(tours),
-        unplaced=tuple(left),
-        capacity=Capacity(
-            visits=len(visits),
-            shifts=days * people,
-            work_h=sum(visit.work_s + visit.access_s for visit in visits) / 3600,
-            least_travel_h=1.5 * days * people,
-            shift_h=8.5 * days * people,
-            overtime_h=1.0 * days * people,
-        ),
+        sites=tuple(parts.sites),
+        visits=tuple(parts.visits),
+        tours=tuple(parts.tours),
+        unplaced=tuple(parts.unplaced),
+        capacity=_capacity(parts.visits, days * people),
         travel=TravelNote(
             source="detour model from crow-fly distance",
             estimated=True,
             low_factor=0.73,
             high_factor=1.37,
         ),
-        stages=(
-            StageCost(stage="split", cost=sum(t.cost for t in tours) * 1.21, placed=len(visits)),
-            StageCost(stage="sequence", cost=sum(t.cost for t in tours) * 1.06, placed=len(visits)),
-            StageCost(
-                stage="relocate", cost=sum(t.cost for t in tours), placed=len(visits) - unplaced
-            ),
-        ),
+        stages=_stages(parts),
         exchanges=(),
         provenance=Provenance(
             version="0.1.0",

@@ -16,7 +16,7 @@ __all__ = ["publish"]
 def publish(
     plan: Plan, folder: Path | str, *, issued: datetime | None = None, language: str = "en"
 ) -> tuple[Path, ...]:
-    """Write the pages of a plan: an overview, and a day page and a run sheet per tour.
+    """Write the pages of a plan: overview, office page, and a day page and run sheet per tour.
 
     Each page is one file that opens without a network. The same plan, issue time and language
     give the same bytes. Pages of an earlier publishing of the same plan that it no longer has

@@ -27,7 +27,7 @@ def view_of(edition: Edition, tour: DayTour) -> DayView:
 
 
 def _island(edition: Edition, view: DayView) -> dict[str, object]:
-    """Return the data of the map: places (bases first, then stops) and legs between them."""
+    """Return the data of the map: bases (one or two) and stops in order, which make its legs."""
     bases = [view.start_base]
     if view.end_base.base_id != view.start_base.base_id:
         bases.append(view.end_base)
@@ -35,8 +35,6 @@ def _island(edition: Edition, view: DayView) -> dict[str, object]:
     out = f"{words('out')} {view.out}"
     back = f"{words('back')} {view.back}"
     times = [f"{out} · {back}"] if len(bases) == 1 else [out, back]
-    last = len(view.stops)
-    numbers = [0, *range(len(bases), len(bases) + last), len(bases) - 1]
     return {
         "words": words.for_scripts(),
         "tour": {
@@ -54,20 +52,14 @@ def _island(edition: Edition, view: DayView) -> dict[str, object]:
             ],
             "stops": [
                 {
-                    "number": stop.number,
                     "name": stop.name,
-                    "state": stop.state,
-                    "note": stop.note,
+                    **({"state": stop.state, "note": stop.note} if stop.note else {}),
                     "arrive": stop.arrive,
                     "leave_ms": stop.leave_ms,
                     "lat": round(stop.lat_deg, 6),
                     "lon": edition.lon(stop.lon_deg),
                 }
                 for stop in view.stops
-            ],
-            "legs": [
-                {"from": numbers[k], "to": numbers[k + 1], "home": k == last}
-                for k in range(last + 1)
             ],
         },
     }

@@ -25,6 +25,7 @@ _NO_MINOR_UNIT = frozenset(
     | {"PYG", "RWF", "UGX", "VND", "VUV", "XAF", "XOF", "XPF"}
 )
 """Currencies without a minor unit (ISO 4217, list one, from memory)."""
+_KM_M = 1000.0
 _SHORT_KM = 100.0
 """Below this a length is given to the nearest 100 m, above it to the nearest kilometre."""
 
@@ -102,6 +103,16 @@ class Figures:
         high = self.duration(high_s)
         return f"{text} ({self.words('interval', low=low, high=high)})"
 
+    def share(self, part: float, whole: float) -> str:
+        """Return a part of a whole in per cent, to one place; 0 of nothing is 0."""
+        return self.words("per_cent", figure=self.number(100 * part / whole if whole else 0.0, 1))
+
+    def metres(self, metres: float) -> str:
+        """Return a length measured on straight lines: metres below a kilometre; no mark."""
+        if metres < _KM_M:
+            return self.words("scale_metres", metres=f"{metres:.0f}")
+        return self.words("kilometres", km=self.number(metres / _KM_M, 2))
+
     def number(self, value: float, digits: int) -> str:
         """Return a number with the decimal sign of the language."""
         return f"{value:.{digits}f}".replace(".", self.words("decimal"))
@@ -127,11 +138,20 @@ class Figures:
 
     def amount(self, amount: float) -> str:
         """Return a bare amount of money, marked."""
+        return self.marked(self.plain_amount(amount))
+
+    def change(self, amount: float) -> str:
+        """Return a bare difference of money with its sign, marked."""
+        sign = "\u2212" if amount < 0 else "+"
+        return self.marked(f"{sign}{self.plain_amount(abs(amount))}")
+
+    def plain_amount(self, amount: float) -> str:
+        """Return a bare amount of money that rests on no travel (a rate of the tariff)."""
         digits = 0 if self.currency in _NO_MINOR_UNIT else 2
         # a narrow space parts thousands, which reads alike with either decimal sign
         whole, point, rest = f"{amount:,.{digits}f}".replace(",", "\u202f").partition(".")
         decimal = self.words("decimal") if point else ""
-        return self.marked(f"{whole}{decimal}{rest}")
+        return f"{whole}{decimal}{rest}"
 
     def date_long(self, day: date) -> str:
         """Return a date with its weekday and year."""

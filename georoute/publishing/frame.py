@@ -35,6 +35,8 @@ __all__ = [
     "leaflet_js",
     "own",
     "policy",
+    "program_of",
+    "slim_style",
 ]
 
 _LEAFLET_FOLDER = "static/js_lib_leaflet"
@@ -52,13 +54,38 @@ def environment() -> jinja2.Environment:
     )
 
 
+def slim_style(text: str) -> str:
+    """Return a style sheet without comments and the white space that means nothing.
+
+    Strings and addresses stay as they are. Space before a colon stays too: in a selector
+    ``li :focus`` is not ``li:focus``; so does space around signs, which ``calc()`` needs.
+    """
+
+    def slim(match: re.Match[str]) -> str:
+        if match.group("kept"):
+            return match.group("kept")
+        return match.group("mark") or ("" if match.group("nothing") else " ")
+
+    slimmed = re.sub(
+        r"""(?P<kept>"(?:[^"\\]|\\.)*"|'(?:[^'\\]|\\.)*'|url\([^)]*\))"""
+        r"""|\s*(?P<mark>[{};,])\s*|(?P<nothing>/\*.*?\*/|(?<=:)\s+)|\s+""",
+        slim,
+        text,
+        flags=re.DOTALL,
+    )
+    return slimmed.replace(";}", "}").strip()
+
+
 @functools.cache
 def own(name: str) -> str:
     """Return the text of one of our own assets (scripts and style sheets)."""
     asset = resources.files("georoute.publishing") / "assets" / name
-    lines = [line.strip() for line in asset.read_text(encoding="utf-8").splitlines()]
+    text = asset.read_text(encoding="utf-8")
+    if name.endswith(".css"):
+        return slim_style(text)
     # comments of whole lines and indentation are for readers of the source, not of the page
-    return "\n".join(line for line in lines if line and not line.startswith(("//", "/*")))
+    lines = [line.strip() for line in text.splitlines()]
+    return "\n".join(line for line in lines if line and not line.startswith("//"))
 
 
 @functools.cache
@@ -97,7 +124,7 @@ def leaflet_css() -> str:
 
     style = _plain_lines(_leaflet("leaflet.css"))
     style = re.sub(r"\s*behavior:\s*url\([^)]*\);", "", style)  # for a browser long gone
-    return re.sub(r"url\((images/[\w-]+\.png)\)", inline, style)
+    return re.sub(r"url\((images/[\w-]+\.png)\)", inline, slim_style(style))
 
 
 def _hash_source(text: str) -> str:
@@ -162,13 +189,21 @@ class DataLayer(MacroElement):
 class Page(Figure):
     """A whole page around a map: folium's Figure with our own skeleton."""
 
-    def __init__(self, *, template: str, scripts: tuple[str, ...], styles: tuple[str, ...]) -> None:
+    def __init__(
+        self,
+        *,
+        template: str,
+        scripts: tuple[str, ...],
+        styles: tuple[str, ...],
+        own_style: str = "",
+    ) -> None:
         super().__init__()
         self._page_template = template
         self._scripts = scripts
         self.header = Element()
         self.header._parent = self  # noqa: SLF001  # as branca's own Figure does
-        self._styles = [_Verbatim("style", text) for text in (leaflet_css(), *map(own, styles))]
+        sheets = [leaflet_css(), *map(own, styles), *([own_style] if own_style else [])]
+        self._styles = [_Verbatim("style", text) for text in sheets]
         self._library = _Verbatim("script", leaflet_js())
         for part in (*self._styles, self._library):
             self.header.add_child(part)
@@ -178,7 +213,7 @@ class Page(Figure):
         for child in self._children.values():
             child.render()
         calls = self.script.render()
-        program = "\n".join(['(() => {\n"use strict";', *map(own, self._scripts), calls, "})();"])
+        program = program_of(self._scripts, calls)
         scripts = [self._library.text, program]
         styles = [style.text for style in self._styles]
         return (
@@ -193,6 +228,11 @@ class Page(Figure):
                 island=Markup(island_json(data)),  # noqa: S704  # escaped by island_json
             )
         )
+
+
+def program_of(scripts: tuple[str, ...], calls: str = "") -> str:
+    """Return our own scripts as one program that leaves no names behind, with calls at its end."""
+    return "\n".join(['(() => {\n"use strict";', *map(own, scripts), calls, "})();"])
 
 
 def policy(scripts: list[str], styles: list[str]) -> str:

@@ -10,11 +10,12 @@ if TYPE_CHECKING:
     from collections.abc import Iterable
     from datetime import date
 
-__all__ = ["OVERVIEW_NAME", "PAGE_PATTERN", "page_name", "slug", "slugs_of"]
+__all__ = ["OFFICE_NAME", "OVERVIEW_NAME", "PAGE_PATTERN", "page_name", "slug", "slugs_of"]
 
 OVERVIEW_NAME = "index.html"
+OFFICE_NAME = "office.html"
 
-PAGE_PATTERN = re.compile(r"(?:index|(?:day|sheet)_\d{4}-\d{2}-\d{2}_[a-z0-9-]+)\.html")
+PAGE_PATTERN = re.compile(r"(?:index|office|(?:day|sheet)_\d{4}-\d{2}-\d{2}_[a-z0-9-]+)\.html")
 """What the names of our pages look like; nothing else in a folder is ever touched."""
 
 _LONGEST_SLUG = 40

@@ -5,10 +5,11 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from georoute.publishing.frame import DataLayer, Page, SurveyMap
+from georoute.publishing.names import OFFICE_NAME
 from georoute.publishing.overview_view import overview_view
 
 if TYPE_CHECKING:
-    from georoute.domain.plan import DayTour
+    from georoute.domain.sites import Base, Site
     from georoute.publishing.overview_view import OverviewView, TourRow
     from georoute.publishing.page_values import Edition
 
@@ -18,27 +19,30 @@ _SCRIPTS = ("base.js", "labels.js", "map.js", "overview.js")
 _STYLES = ("page.css", "overview.css")
 
 
-def _places(edition: Edition) -> dict[str, tuple[float, float]]:
-    """Return latitude and longitude of bases and of the sites of all tours, by id."""
-    index = edition.index
-    places = {
-        base.base_id: (round(base.lat_deg, 5), edition.lon(base.lon_deg))
-        for base in index.bases.values()
-    }
-    for tour in edition.plan.tours:
-        for stop in tour.stops:
-            site = index.sites[stop.site_id]
-            # a site with the id of a base is another place; the prefix keeps them apart
-            key = f"site|{site.site_id}"
-            places[key] = (round(site.lat_deg, 5), edition.lon(site.lon_deg))
-    return places
+_STEP_DEG = 1e-5
+"""Places of the overview are told in whole steps of this, about a metre."""
 
 
-def _outermost(tour: DayTour, places: dict[str, tuple[float, float]]) -> list[str]:
-    """Return the stops where the tag of a tour may hang: the farthest one each way."""
-    keys = [f"site|{stop.site_id}" for stop in tour.stops]
-    south_to_north = sorted(keys, key=lambda key: places[key][0])
-    west_to_east = sorted(keys, key=lambda key: places[key][1])
+def _steps(edition: Edition, place: Base | Site) -> tuple[int, int]:
+    """Return latitude and longitude in whole steps."""
+    return round(place.lat_deg / _STEP_DEG), round(edition.lon(place.lon_deg) / _STEP_DEG)
+
+
+def _differences(places: list[tuple[int, int]]) -> list[int]:
+    """Return places as one list: each pair is what was added to the pair before it."""
+    flat = []
+    lat, lon = 0, 0
+    for next_lat, next_lon in places:
+        flat += [next_lat - lat, next_lon - lon]
+        lat, lon = next_lat, next_lon
+    return flat
+
+
+def _outermost(stops: list[tuple[int, int]]) -> list[int]:
+    """Return the stops (from 0) where the tag of a tour may hang: the farthest one each way."""
+    numbers = range(len(stops))
+    south_to_north = sorted(numbers, key=lambda number: stops[number][0])
+    west_to_east = sorted(numbers, key=lambda number: stops[number][1])
     chosen = [line[end] for line in (south_to_north, west_to_east) for end in (0, -1)]
     return list(dict.fromkeys(chosen))
 
@@ -50,42 +54,53 @@ def _short_name(name: str) -> str:
 
 
 def _island(edition: Edition, view: OverviewView) -> dict[str, object]:
-    words, places = edition.figures.words, _places(edition)
-    numbers = {key: number for number, key in enumerate(places)}
+    """Return the data of the map: bases, and each tour's bases by number and stops by place."""
+    words, index = edition.figures.words, edition.index
+    numbers = {base_id: number for number, base_id in enumerate(index.bases)}
 
     def strand(row: TourRow) -> dict[str, object]:
         tour = row.tour
-        way = [tour.start_base_id, *(f"site|{s.site_id}" for s in tour.stops), tour.end_base_id]
-        way_numbers = [numbers[key] for key in way]
-        count = len(tour.stops)
-        tag = words("tag_one" if count == 1 else "tag", date=row.date_short, count=count)
+        stops = [_steps(edition, index.sites[stop.site_id]) for stop in tour.stops]
+        count = len(stops)
         return {
             "hue": row.look.hue,
-            "outlined": row.look.outlined,
+            **({"outlined": True} if row.look.outlined else {}),
             "dash": row.look.dash,
             "mark": row.look.mark,
-            "tag": tag,
+            "tag": words("tag_one" if count == 1 else "tag", date=row.date_short, count=count),
             "inspector": _short_name(row.inspector),
-            "tag_places": [numbers[key] for key in _outermost(tour, places)],
-            "way": way_numbers,
+            "tag_stops": _outermost(stops),
+            "bases": [numbers[tour.start_base_id], numbers[tour.end_base_id]],
+            "stops": _differences(stops),
         }
 
     return {
         "words": words.for_scripts(),
-        "places": list(places.values()),
-        "bases": [
-            {"name": base.name, "place": numbers[base.base_id]}
-            for base in edition.plan.programme.bases
-        ],
+        "bases": [base.name for base in index.bases.values()],
+        "base_places": _differences([_steps(edition, base) for base in index.bases.values()]),
         "tours": [strand(row) for row in view.rows],
     }
+
+
+def _column_words(view: OverviewView) -> str:
+    """Return the style that puts the word of its column before each figure on a phone.
+
+    The words come from the catalogue; none from a user gets into a style sheet.
+    """
+    rules = []
+    for number, word in enumerate(view.columns, start=2):
+        text = word.replace("\\", "\\\\").replace('"', '\\"')
+        rules.append(f'.tours td:nth-of-type({number})::before{{content:"{text}"}}')
+    return f"@media (max-width:899px){{{''.join(rules)}}}"
 
 
 def overview_page(edition: Edition) -> str:
     """Return the overview page as HTML."""
     words = edition.figures.words
     view = overview_view(edition.plan, edition.index, edition.slugs, edition.figures)
-    page = Page(template="overview.html", scripts=_SCRIPTS, styles=_STYLES)
+    page = Page(
+        template="overview.html", scripts=_SCRIPTS, styles=_STYLES, own_style=_column_words(view)
+    )
     survey_map = SurveyMap("map_overview_name")
     survey_map.add_child(DataLayer("drawOverview"))
     page.add_child(survey_map)
@@ -93,6 +108,7 @@ def overview_page(edition: Edition) -> str:
         **edition.common(),
         "title": view.title,
         "view": view,
+        "office_href": OFFICE_NAME,
         "about": [*edition.about(), words("library")],
     }
     return page.page_text(_island(edition, view), values)

@@ -18,27 +18,28 @@ if TYPE_CHECKING:
     from georoute.publishing.figures import Figures
     from georoute.publishing.looks import TourLook
 
-__all__ = ["Bar", "OverviewView", "StageRow", "TourRow", "UnplacedRow", "overview_view"]
+__all__ = ["Bar", "OverviewView", "TourRow", "UnplacedRow", "overview_view"]
 
 _HOUR_S = 3600.0
 _BAR_UNITS = 1000
-_MOST_TICKS = 7
+_MOST_TICKS = 12
+_COLUMNS = ("stops", "drive", "distance", "work", "wait", "overtime", "cost")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Bar:
-    """A tour on the common hour scale of the table: paths in units of 1000 across, 16 down."""
+    """A tour on the common hour scale of the table: paths in units of 1000 across, 16 down.
+
+    ``blocks`` are pairs of a kind (``wait``, ``write``, ``work``) and a path that is not empty.
+    """
 
     line: str
-    work: str
-    wait: str
-    write_up: str
-    text: str
+    blocks: tuple[tuple[str, str], ...]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class TourRow:
-    """One line of the table of tours."""
+    """One tour in the table of tours; ``cells`` are its figures, each with its unit."""
 
     tour: DayTour
     look: TourLook
@@ -46,14 +47,8 @@ class TourRow:
     inspector: str
     day_href: str
     sheet_href: str
-    stops: str
     out_back: str
-    drive: str
-    length: str
-    work: str
-    wait: str
-    overtime: str
-    cost: str
+    cells: tuple[str, ...]
     bar: Bar
 
 
@@ -69,17 +64,11 @@ class UnplacedRow:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class StageRow:
-    """Cost of the plan after a stage."""
-
-    stage: str
-    cost: str
-    placed: int
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
 class OverviewView:
-    """The overview, ready to show. ``ticks`` are pairs of a place (of 1000) and an hour."""
+    """The overview, ready to show. ``ticks`` are pairs of a place (of 1000) and an hour.
+
+    ``columns`` name the figures of the rows, ``sums`` are those of all tours together.
+    """
 
     title: str
     unplaced: tuple[UnplacedRow, ...]
@@ -87,9 +76,10 @@ class OverviewView:
     capacity: str
     capacity_verdict: str
     capacity_short: bool
+    columns: tuple[str, ...]
     rows: tuple[TourRow, ...]
-    sums: Mapping[str, str]
-    stages: tuple[StageRow, ...]
+    sums: tuple[str, ...]
+    drive_interval: str
     ticks: tuple[tuple[int, str], ...]
 
 
@@ -134,27 +124,21 @@ class _DayScale:
         )
 
 
-def _bar(tour: DayTour, scale: _DayScale, figures: Figures) -> Bar:
+def _bar(tour: DayTour, scale: _DayScale) -> Bar:
     def span(first: datetime, last: datetime) -> tuple[int, int]:
         x = scale.at(tour, first)
         return x, scale.at(tour, last) - x
 
     waits = [span(stop.arrive, stop.start) for stop in tour.stops if stop.wait_s > 0]
     write_up = [span(tour.back, tour.finish)] if tour.write_up_s > 0 else []
-    text = figures.words(
-        "bar_text",
-        out=figures.clock(tour.depart, tour.day),
-        stops=len(tour.stops),
-        work=figures.duration(tour.work_s),
-        wait=figures.duration(tour.wait_s),
-        back=figures.clock(tour.back, tour.day),
-    )
+    paths = {
+        "wait": _path(waits, 4, 8),
+        "write": _path(write_up, 4, 8),
+        "work": _path([span(stop.start, stop.leave) for stop in tour.stops], 2, 12),
+    }
     return Bar(
         line=_path([span(tour.depart, tour.back)], 7, 2),
-        work=_path([span(stop.start, stop.leave) for stop in tour.stops], 2, 12),
-        wait=_path(waits, 4, 8),
-        write_up=_path(write_up, 4, 8),
-        text=text,
+        blocks=tuple((kind, path) for kind, path in paths.items() if path),
     )
 
 
@@ -178,32 +162,27 @@ def _tour_row(
         inspector=index.inspectors[tour.inspector_id].name,
         day_href=page_name("day", tour.day, person),
         sheet_href=page_name("sheet", tour.day, person),
-        stops=_stops_text(tour, index, figures),
         out_back=figures.marked(f"{out}\u2013{back}"),
-        drive=figures.marked(figures.compact(tour.drive_s)),
-        length=figures.kilometres(tour.dist_m),
-        work=figures.compact(tour.work_s),
-        wait=figures.marked(figures.compact(tour.wait_s)),
-        overtime=figures.marked(figures.compact(tour.overtime_s)),
-        cost=figures.amount(tour.cost),
-        bar=_bar(tour, scale, figures),
+        cells=_cells([tour], figures, stops=_stops_text(tour, index, figures)),
+        bar=_bar(tour, scale),
     )
 
 
-def _sums(tours: Sequence[DayTour], figures: Figures) -> dict[str, str]:
-    """Return the last line of the table of tours."""
-    marked, compact = figures.marked, figures.compact
-    drive_s = sum(tour.drive_s for tour in tours)
-    return {
-        "stops": str(sum(len(tour.stops) for tour in tours)),
-        "drive": marked(compact(drive_s)),
-        "drive_interval": figures.drive(drive_s) if figures.has_interval else "",
-        "length": figures.kilometres(sum(tour.dist_m for tour in tours)),
-        "work": compact(sum(tour.work_s for tour in tours)),
-        "wait": marked(compact(sum(tour.wait_s for tour in tours))),
-        "overtime": marked(compact(sum(tour.overtime_s for tour in tours))),
-        "cost": figures.amount(sum(tour.cost for tour in tours)),
-    }
+def _cells(tours: Sequence[DayTour], figures: Figures, *, stops: str) -> tuple[str, ...]:
+    """Return the figures of some tours together, in the order of ``_COLUMNS``."""
+
+    def hours(seconds: float) -> str:
+        return figures.words("hours_compact", hours=figures.compact(seconds))
+
+    return (
+        stops,
+        figures.marked(hours(sum(tour.drive_s for tour in tours))),
+        figures.length(sum(tour.dist_m for tour in tours)),
+        hours(sum(tour.work_s for tour in tours)),
+        figures.marked(hours(sum(tour.wait_s for tour in tours))),
+        figures.marked(hours(sum(tour.overtime_s for tour in tours))),
+        figures.money(sum(tour.cost for tour in tours)),
+    )
 
 
 def _unplaced_rows(plan: Plan, index: PlanIndex, figures: Figures) -> tuple[UnplacedRow, ...]:
@@ -221,19 +200,6 @@ def _unplaced_rows(plan: Plan, index: PlanIndex, figures: Figures) -> tuple[Unpl
             )
         )
     return tuple(rows)
-
-
-def _stage_rows(plan: Plan, figures: Figures) -> tuple[StageRow, ...]:
-    """Name each stage in the language of the page; a stage without words keeps its own name."""
-    texts = figures.words.texts
-    return tuple(
-        StageRow(
-            stage=texts.get(f"stage_{stage.stage}", stage.stage),
-            cost=figures.amount(stage.cost),
-            placed=stage.placed,
-        )
-        for stage in plan.stages
-    )
 
 
 def overview_view(
@@ -268,7 +234,10 @@ def overview_view(
         else words("capacity_enough"),
         capacity_short=short,
         rows=tuple(_tour_row(plan, tour, index, slugs, scale) for tour in plan.tours),
-        sums=_sums(plan.tours, figures),
-        stages=_stage_rows(plan, figures),
+        columns=tuple(words(key) for key in _COLUMNS),
+        sums=_cells(plan.tours, figures, stops=str(sum(len(t.stops) for t in plan.tours))),
+        drive_interval=figures.drive(sum(tour.drive_s for tour in plan.tours))
+        if figures.has_interval
+        else "",
         ticks=scale.ticks(),
     )

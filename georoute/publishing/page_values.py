@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -68,6 +69,10 @@ class Edition:
         high = self.figures.number(travel.high_factor, 2)
         return words("estimated_note", source=travel.source, low=low, high=high)
 
+    def register_name(self) -> str:
+        """Return the file name of the register; the folders of an office are nobody's business."""
+        return re.split(r"[\\/]", self.plan.provenance.register_source)[-1]
+
     def about(self) -> list[str]:
         """Return where the plan came from, line by line."""
         words, made = self.figures.words, self.plan.provenance
@@ -77,7 +82,7 @@ class Edition:
             words("made_with", version=made.version, seed=made.seed, effort=made.effort, rule=rule),
             words(
                 "register_hash",
-                source=made.register_source,
+                source=self.register_name(),
                 digest=made.register_sha256[:_SHORT_HASH],
             ),
         ]

@@ -8,7 +8,8 @@ from typing import TYPE_CHECKING
 from georoute.errors import OutputError
 from georoute.files import atomic_write_bytes
 from georoute.publishing.day_page import day_page
-from georoute.publishing.names import OVERVIEW_NAME, PAGE_PATTERN, page_name
+from georoute.publishing.names import OFFICE_NAME, OVERVIEW_NAME, PAGE_PATTERN, page_name
+from georoute.publishing.office_page import office_page
 from georoute.publishing.overview_page import overview_page
 from georoute.publishing.page_values import Edition
 from georoute.publishing.run_sheet import run_sheet
@@ -30,7 +31,7 @@ _PLAN = re.compile(r'<meta name="georoute-plan" content="([^"]*)">')
 
 
 def pages_of(plan: Plan, *, issued: datetime | None, language: str) -> dict[str, str]:
-    """Return the pages of a plan, by file name: the overview, then each tour's page and sheet.
+    """Return the pages of a plan, by file name: overview, each tour's page and sheet, office page.
 
     Raises
     ------
@@ -43,6 +44,7 @@ def pages_of(plan: Plan, *, issued: datetime | None, language: str) -> dict[str,
         person = edition.slugs[tour.inspector_id]
         pages[page_name("day", tour.day, person)] = day_page(edition, tour)
         pages[page_name("sheet", tour.day, person)] = run_sheet(edition, tour)
+    pages[OFFICE_NAME] = office_page(edition)
     return pages
 
 

@@ -10,6 +10,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from georoute.publishing.words_es import SPANISH
+from georoute.publishing.words_office import OFFICE_ENGLISH, OFFICE_SPANISH
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -28,6 +29,7 @@ ENGLISH: dict[str, str] = {
     "date_short": "{weekday} {day} {month}",
     "hours_minutes": "{hours} h {minutes:02d} min",
     "minutes": "{minutes} min",
+    "hours_compact": "{hours} h",
     "kilometres": "{km} km",
     "next_day": "{clock} next day",
     "approx": "≈\u202f{figure}",
@@ -158,24 +160,13 @@ ENGLISH: dict[str, str] = {
     "tour": "Tour",
     "stops_late": "{stops}, {late} late",
     "out_back": "Out\u2013back",
-    "hours_short": "{word}, h:min",
-    "kilometres_short": "km",
     "day_bar": "hour of the day",
-    "bar_text": "out {out}, {stops} stops, work {work}, wait {wait}, back {back}",
     "all_tours": "All tours",
     "show_tour": "on the map",
-    "paper": "Paper",
     "open_sheet": "sheet",
-    "cost_by_stage": "Cost by stage",
-    "stage": "Stage",
-    "placed": "Placed",
     "tag": "{date}, {count} stops",
     "tag_one": "{date}, 1 stop",
     "no_tours": "No tour: nothing is placed.",
-    "stage_split": "days, first split",
-    "stage_sequence": "order within each day",
-    "stage_relocate": "days together",
-    "stage_improve": "days together",
     # map controls and states
     "map_name": "Map of the tour",
     "map_overview_name": "Map of all tours",
@@ -216,7 +207,10 @@ ENGLISH: dict[str, str] = {
     "north": "N",
 }
 
-LANGUAGES: dict[str, dict[str, str]] = {"en": ENGLISH, "es": SPANISH}
+LANGUAGES: dict[str, dict[str, str]] = {
+    "en": ENGLISH | OFFICE_ENGLISH,
+    "es": SPANISH | OFFICE_SPANISH,
+}
 
 
 @dataclass(frozen=True, slots=True)

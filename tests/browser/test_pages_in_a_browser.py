@@ -292,9 +292,9 @@ def test_overview_hides_and_shows_tours(open_page: Open, many_days: tuple[Path, 
     page.locator("#tour-1 input").uncheck()
     assert page.locator(".labels .tag:visible").count() == 14
     page.locator(".labels .tag").nth(3).click()
-    assert page.locator("tr.chosen").get_attribute("id") == "tour-4"
-    assert page.evaluate("document.activeElement.closest('tr').id") == "tour-4"
-    page.locator("#tour-4 th a").click()
+    assert page.locator("tbody.chosen").get_attribute("id") == "tour-4"
+    assert page.evaluate("document.activeElement.closest('tbody').id") == "tour-4"
+    page.locator("#n4").click()
     assert page.locator("h1").inner_text().startswith("Tuesday 3 March 2026")
 
 

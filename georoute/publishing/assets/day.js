@@ -1,6 +1,6 @@
 // The day page: plates, cord and the run list that follow each other.
 function makePlate(stop) {
-  const plate = html("button", `plate plate-${stop.state}`);
+  const plate = html("button", `plate plate-${stop.state || "plain"}`);
   plate.type = "button";
   plate.append(html("span", "plate-number", String(stop.number)));
   plate.append(html("span", "plate-time", stop.arrive));
@@ -15,8 +15,18 @@ function makeBasePlate(base) {
   return plate;
 }
 
+// Legs run from the first base through the stops to the last base.
+function numbered(tour) {
+  const bases = tour.bases.length;
+  const count = tour.stops.length;
+  tour.stops.forEach((stop, k) => { stop.number = k + 1; });
+  const way = [0, ...tour.stops.map((stop, k) => bases + k), bases - 1];
+  tour.legs = way.slice(1).map((to, k) => ({ from: way[k], to, home: k === count }));
+  return tour;
+}
+
 function drawDay(map) {
-  const { tour } = data;
+  const tour = numbered(data.tour);
   const state = { current: 0 };
   const places = tour.bases.concat(tour.stops);
   const labels = tour.bases.map(makeBasePlate).concat(tour.stops.map(makePlate));
@@ -91,7 +101,7 @@ function openOnNextStop(tour, show) {
   if (!next) return;
   const row = document.getElementById(`stop-${next.number}`);
   row.classList.add("next-stop");
-  row.querySelector(".next-mark").textContent = words.map_next_stop;
+  row.querySelector(".row-head").after(html("p", "next-mark", words.map_next_stop));
   if (isPhone() || next.number > 1) show(next.number);
 }
 

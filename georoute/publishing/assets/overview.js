@@ -1,5 +1,6 @@
 // The overview: one strand per tour, a mark at each stop, a tag that names the tour.
 const MOST_TAGS = 24;
+const ROOM_OF_A_TAG = 11000; // square pixels of map
 
 const MARKS = {
   circle: (x, y, r) => `M${x - r} ${y}a${r} ${r} 0 1 0 ${2 * r} 0a${r} ${r} 0 1 0 ${-2 * r} 0Z`,
@@ -22,8 +23,40 @@ function makeTag(tour) {
   tag.type = "button";
   const glyph = svg("svg", { width: 14, height: 14, "aria-hidden": "true", class: "glyph" });
   glyph.append(svg("path", { d: MARKS[tour.mark](7, 7, 5), class: "mark" }));
+  // where there is little room, the initials stand for the name: hue alone never does
+  const initials = tour.inspector.split(/[ .]+/).map((part) => part.charAt(0)).join("");
   tag.append(glyph, html("span", "tag-text", tour.tag), html("span", "tag-who", tour.inspector));
+  tag.append(html("span", "tag-initials", initials));
   return tag;
+}
+
+// Places come as one list of differences, in steps of 1e-5 degrees.
+function placesOf(differences) {
+  const places = [];
+  let lat = 0;
+  let lon = 0;
+  for (let k = 0; k < differences.length; k += 2) {
+    lat += differences[k];
+    lon += differences[k + 1];
+    places.push([lat / 1e5, lon / 1e5]);
+  }
+  return places;
+}
+
+// All places on the map, bases first; each tour gets its way as numbers of places.
+function numberedPlaces({ tours, base_places: bases }) {
+  const places = placesOf(bases);
+  const known = new Map();
+  for (const tour of tours) {
+    const stops = placesOf(tour.stops).map((place) => {
+      const key = place.join(" ");
+      if (!known.has(key)) known.set(key, places.push(place) - 1);
+      return known.get(key);
+    });
+    tour.way = [tour.bases[0], ...stops, tour.bases[1]];
+    tour.tag_places = tour.tag_stops.map((stop) => stops[stop]);
+  }
+  return places;
 }
 
 // Strands that join the same two places lie side by side.
@@ -39,15 +72,16 @@ function slots(tours) {
 }
 
 function drawOverview(map) {
-  const { tours, places, bases } = data;
+  const { tours } = data;
+  const places = numberedPlaces(data);
   const state = { chosen: -1, visible: tours.map(() => true) };
   const tags = tours.map(makeTag);
-  const baseTags = bases.map((base) => {
+  const baseTags = data.bases.map((name) => {
     const plate = html("div", "base-plate");
-    plate.append(html("span", "base-name", base.name));
+    plate.append(html("span", "base-name", name));
     return plate;
   });
-  const sheet = new SurveySheet((self) => paintOverview(self, map, tags, baseTags, state));
+  const sheet = new SurveySheet((self) => paintOverview(self, map, places, { tags, baseTags, state }));
   const fit = () => {
     const padding = map.getSize().x < 640 ? [34, 44] : [80, 50];
     map.fitBounds(L.latLngBounds(places), { padding, maxZoom: 15, animate: false });
@@ -59,7 +93,7 @@ function drawOverview(map) {
 
   function choose(number, focusRow) {
     state.chosen = number;
-    document.querySelectorAll("[data-tour]").forEach((row, k) => {
+    document.querySelectorAll(".tours tbody").forEach((row, k) => {
       row.classList.toggle("chosen", k === number);
     });
     sheet.refresh();
@@ -70,7 +104,7 @@ function drawOverview(map) {
     L.DomEvent.disableClickPropagation(tag);
     tag.addEventListener("click", () => choose(k, true));
   });
-  document.querySelectorAll("[data-tour]").forEach((row, k) => {
+  document.querySelectorAll(".tours tbody").forEach((row, k) => {
     const box = row.querySelector("input[type=checkbox]");
     box.checked = true;
     box.addEventListener("change", () => {
@@ -84,9 +118,9 @@ function drawOverview(map) {
   mapButtons({ in: () => map.zoomIn(), out: () => map.zoomOut(), fit });
 }
 
-function paintOverview(sheet, map, tags, baseTags, state) {
-  const { tours, bases } = data;
-  const points = data.places.map((place) => map.latLngToLayerPoint(place));
+function paintOverview(sheet, map, places, { tags, baseTags, state }) {
+  const { tours } = data;
+  const points = places.map((place) => map.latLngToLayerPoint(place));
   const shown = tours.map((tour, k) => k).filter((k) => state.visible[k]);
   const shifts = slots(tours);
   const segments = [];
@@ -115,20 +149,23 @@ function paintOverview(sheet, map, tags, baseTags, state) {
     }
     strands.append(group);
   }
+  const { x: wide, y: high } = map.getSize();
+  sheet.labels.classList.toggle("compact", wide < 440);
   const items = [];
   const label = (element, spots) => {
     const anchors = spots.map(({ x, y }) => [x, y]);
     items.push({ element, anchors, w: element.offsetWidth, h: element.offsetHeight });
   };
-  bases.forEach((base, k) => {
-    const at = points[base.place];
+  baseTags.forEach((plate, k) => {
+    const at = points[k];
     dots.push([at.x, at.y]);
     marks.append(target(Math.round(at.x), Math.round(at.y)));
-    label(baseTags[k], [at]);
+    label(plate, [at]);
   });
-  const few = shown.length <= MOST_TAGS;
+  const most = Math.min(MOST_TAGS, Math.floor((wide * high) / ROOM_OF_A_TAG));
+  const few = shown.length <= most;
   document.getElementById("map-news").textContent = few
-    ? "" : fill(words.map_too_many, { count: MOST_TAGS });
+    ? "" : fill(words.map_too_many, { count: most });
   tags.forEach((tag, k) => {
     tag.hidden = !state.visible[k] || !(state.chosen < 0 ? few : state.chosen === k);
     tag.classList.toggle("chosen", state.chosen === k);

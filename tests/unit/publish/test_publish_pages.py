@@ -95,7 +95,8 @@ def test_pages_and_their_names(tmp_path: Path) -> None:
         "day_2026-03-02_insp-1.html",
         "sheet_2026-03-02_insp-1.html",
     ]
-    assert len(pages) == 1 + 2 * 4
+    assert pages[-1].name == "office.html"
+    assert len(pages) == 2 + 2 * 4
     assert sorted(pages) == sorted((tmp_path / "new" / "maps").iterdir())
 
 
@@ -220,8 +221,9 @@ def test_a_folder_that_is_a_file_is_refused(tmp_path: Path) -> None:
 
 def test_a_plan_without_tours_still_has_an_overview(tmp_path: Path) -> None:
     plan = replace(sample_plan(stops=2), tours=())
-    (page,) = publish(plan, tmp_path)
-    assert "nothing is placed" in page.read_text("utf-8")
+    overview, office = publish(plan, tmp_path)
+    assert "nothing is placed" in overview.read_text("utf-8")
+    assert "No visit is placed after its due date." in office.read_text("utf-8")
 
 
 def test_no_contact_of_a_site_in_a_file_name_or_on_the_overview(tmp_path: Path) -> None:

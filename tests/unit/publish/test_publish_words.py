@@ -11,10 +11,12 @@ import pytest
 import georoute.publishing
 from georoute.domain.cautions import CAUTION
 from georoute.domain.plan import ReasonCode, StopRule
-from georoute.publishing.words import ENGLISH, LANGUAGES, words_for
+from georoute.publishing.words import LANGUAGES, words_for
 
 FOLDER = Path(georoute.publishing.__file__).parent
-BUILT = ("theme_", "reason_", "stage_", "stop_rule_")  # ids put together from a prefix
+ENGLISH = LANGUAGES["en"]
+# ids put together from a prefix
+BUILT = ("theme_", "reason_", "stage_", "stop_rule_", "cost_", "rate_")
 
 
 def places(text: str) -> set[str]:
@@ -52,6 +54,17 @@ def test_every_reason_and_stop_rule_has_words() -> None:
     wanted = {f"reason_{code.value}" for code in ReasonCode}
     wanted |= {f"stop_rule_{rule.name.lower()}" for rule in StopRule}
     assert wanted <= set(ENGLISH)
+
+
+def test_every_stage_of_the_search_has_words() -> None:
+    # what the search calls its stages is told in the plan; the page says it in its language
+    notes = re.findall(
+        r"""\.note\("([^"]+)"\)""",
+        "".join(p.read_text("utf-8") for p in (FOLDER.parent / "pipeline").glob("*.py")),
+    )
+    assert len(notes) >= 3
+    for note in notes:
+        assert f"stage_{note.replace(' ', '_')}" in ENGLISH
 
 
 def test_no_word_is_idle_and_none_is_missing() -> None:

@@ -12,6 +12,8 @@ from hypothesis import settings
 settings.register_profile("default", deadline=None, print_blob=True)
 settings.register_profile("ci", parent=settings.get_profile("default"), derandomize=True)
 settings.register_profile("nightly", parent=settings.get_profile("default"), max_examples=2_000)
+# For kernels that run as plain Python, a hundred times slower.
+settings.register_profile("few", parent=settings.get_profile("ci"), max_examples=8)
 settings.load_profile(os.environ.get("HYPOTHESIS_PROFILE", "ci"))
 
 

@@ -21,6 +21,7 @@ from georoute.kernels.insertion import best_place, replaced
 from georoute.problem import Problem
 from georoute.problem.board import make_board
 from tests.days_helpers import Recipe, random_orders, random_problem, slow_tour
+from tests.examples import at_most
 
 seeds = st.integers(0, 10_000)
 SMALL = Recipe(visits=7, shifts=3, windowed=0.5, double_windowed=0.25)
@@ -63,7 +64,7 @@ def test_every_tour_costs_what_both_clocks_say(seed: int, recipe: Recipe) -> Non
     assert_true_to_clocks(problem, make_board(problem, random_orders(problem, seed)))
 
 
-@settings(max_examples=30)
+@settings(max_examples=at_most(30))
 @given(seed=seeds, recipe=recipes)
 def test_changes_keep_the_board_true(seed: int, recipe: Recipe) -> None:
     problem = random_problem(seed, recipe)
@@ -79,7 +80,7 @@ def test_changes_keep_the_board_true(seed: int, recipe: Recipe) -> None:
     assert_true_to_clocks(problem, board)
 
 
-@settings(max_examples=40)
+@settings(max_examples=at_most(40))
 @given(seed=seeds, recipe=recipes)
 def test_best_place_is_the_best_of_all_positions(seed: int, recipe: Recipe) -> None:
     problem = random_problem(seed, recipe)
@@ -103,7 +104,7 @@ def test_best_place_is_the_best_of_all_positions(seed: int, recipe: Recipe) -> N
                 assert best_place(board, s, v, rise + 1) == (rise, p)
 
 
-@settings(max_examples=40)
+@settings(max_examples=at_most(40))
 @given(seed=seeds, recipe=recipes)
 def test_replacing_a_stop_costs_what_the_slow_clock_says(seed: int, recipe: Recipe) -> None:
     problem = random_problem(seed, recipe)

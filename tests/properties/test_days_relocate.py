@@ -25,6 +25,7 @@ from tests.days_helpers import (
     slow_loss,
     slow_tour,
 )
+from tests.examples import at_most
 
 seeds = st.integers(0, 10_000)
 FEW = Effort(name="few", kicks_per_stop=0, relocation_rounds=3)
@@ -51,7 +52,7 @@ def test_the_result_keeps_every_limit(seed: int, recipe: Recipe) -> None:
     assert not result.stopped
 
 
-@settings(max_examples=25)
+@settings(max_examples=at_most(25))
 @given(seed=seeds, recipe=recipes)
 def test_a_plan_that_fits_never_gets_worse(seed: int, recipe: Recipe) -> None:
     problem = random_problem(seed, recipe)
@@ -60,7 +61,7 @@ def test_a_plan_that_fits_never_gets_worse(seed: int, recipe: Recipe) -> None:
     assert outcome(problem, again.solution) <= outcome(problem, start)
 
 
-@settings(max_examples=25)
+@settings(max_examples=at_most(25))
 @given(seed=seeds, recipe=recipes)
 def test_no_visit_left_out_fits_into_a_tour_as_it_is(seed: int, recipe: Recipe) -> None:
     problem = random_problem(seed, recipe)
@@ -72,7 +73,7 @@ def test_no_visit_left_out_fits_into_a_tour_as_it_is(seed: int, recipe: Recipe) 
                 assert slow_tour(problem, s, longer).breaches
 
 
-@settings(max_examples=25)
+@settings(max_examples=at_most(25))
 @given(seed=seeds)
 def test_a_must_is_not_left_out_for_anything_less(seed: int) -> None:
     # Without a place for a must even among the musts alone, nothing less could make room.
@@ -87,7 +88,7 @@ def test_a_must_is_not_left_out_for_anything_less(seed: int) -> None:
                 assert all(slow_tour(problem, s, tour).breaches for tour in tours)
 
 
-@settings(max_examples=15)
+@settings(max_examples=at_most(15))
 @given(seed=seeds)
 def test_everything_is_placed_where_there_is_ample_time(seed: int) -> None:
     ample = Recipe(visits=12, shifts=6, windowed=0.0, loaded=0.0, restricted=0.0, span_m=15_000.0)
@@ -97,7 +98,7 @@ def test_everything_is_placed_where_there_is_ample_time(seed: int) -> None:
     assert result.solution.unplaced(problem.visit_count).size == 0
 
 
-@settings(max_examples=15)
+@settings(max_examples=at_most(15))
 @given(seed=seeds, recipe=recipes)
 def test_same_seed_same_result(seed: int, recipe: Recipe) -> None:
     problem = random_problem(seed, recipe)
@@ -108,7 +109,7 @@ def test_same_seed_same_result(seed: int, recipe: Recipe) -> None:
     assert [m.kind for m in first.moves] == [m.kind for m in second.moves]
 
 
-@settings(max_examples=20)
+@settings(max_examples=at_most(20))
 @given(seed=seeds, polls=st.integers(0, 60))
 def test_stopped_at_any_moment_the_result_keeps_every_limit(seed: int, polls: int) -> None:
     problem = random_problem(seed, TIGHT)
@@ -146,7 +147,7 @@ def replay(start: Solution, result: RelocateResult, problem: Problem) -> list[li
     return orders
 
 
-@settings(max_examples=25)
+@settings(max_examples=at_most(25))
 @given(seed=seeds, recipe=recipes)
 def test_the_moves_lead_from_the_start_to_the_result(seed: int, recipe: Recipe) -> None:
     problem = random_problem(seed, recipe)

@@ -22,6 +22,7 @@ from tests.days_helpers import (
     slow_cost,
     slow_loss,
 )
+from tests.examples import at_most
 
 seeds = st.integers(0, 10_000)
 TIGHT = Recipe(visits=10, shifts=3, paid_min=(180, 300), loaded=0.5, windowed=0.4, must=0.3)
@@ -68,7 +69,7 @@ def test_it_never_leaves_more_out_nor_costs_more(seed: int, recipe: Recipe) -> N
 
 
 @given(seed=seeds)
-@settings(max_examples=20)
+@settings(max_examples=at_most(20))
 def test_the_same_seed_gives_the_same_days(seed: int) -> None:
     problem = random_problem(seed, TIGHT)
     start = feasible_start(problem, seed)
@@ -78,7 +79,7 @@ def test_the_same_seed_gives_the_same_days(seed: int) -> None:
 
 
 @given(seed=seeds, recipe=recipes)
-@settings(max_examples=30)
+@settings(max_examples=at_most(30))
 def test_it_starts_from_nothing_as_well(seed: int, recipe: Recipe) -> None:
     problem = random_problem(seed, recipe)
     nothing = Solution(orders=tuple(np.empty(0, np.int64) for _ in range(problem.shift_count)))

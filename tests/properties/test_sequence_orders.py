@@ -11,6 +11,7 @@ from hypothesis import strategies as st
 
 from georoute.problem import Problem
 from georoute.sequence import SequencedTour, sequence_tour
+from tests.examples import at_most
 from tests.sequence_helpers import (
     best_by_dynamic_programming,
     best_by_trying_all,
@@ -57,7 +58,7 @@ def days(draw: st.DrawFn, *, most: int = 12, windows: bool = False) -> Problem:
 
 
 @given(problem=days() | days(windows=True))
-@settings(max_examples=30)
+@settings(max_examples=at_most(30))
 def test_a_tour_stays_a_permutation_and_is_never_worse(problem: Problem) -> None:
     found = _run(problem)
     given_order = np.arange(problem.visit_count)
@@ -66,7 +67,7 @@ def test_a_tour_stays_a_permutation_and_is_never_worse(problem: Problem) -> None
 
 
 @given(problem=days())
-@settings(max_examples=30)
+@settings(max_examples=at_most(30))
 def test_each_step_costs_what_a_plain_sum_of_its_legs_costs(problem: Problem) -> None:
     hour = problem.shifts._replace(overtime_rate=problem.shifts.hour_rate)
     problem_plain = Problem(
@@ -96,7 +97,7 @@ def test_each_step_costs_what_a_plain_sum_of_its_legs_costs(problem: Problem) ->
 
 
 @given(seed=seeds, places=st.integers(2, 7), symmetric=st.booleans(), end=st.integers(0, 1))
-@settings(max_examples=30)
+@settings(max_examples=at_most(30))
 def test_small_days_cost_what_trying_all_orders_finds(
     seed: int, places: int, symmetric: bool, end: int
 ) -> None:
@@ -131,7 +132,7 @@ def test_small_days_with_windows_are_worth_what_trying_all_orders_finds(problem:
 
 
 @given(problem=days(windows=True))
-@settings(max_examples=15)
+@settings(max_examples=at_most(15))
 def test_same_seed_same_order_with_or_without_the_log(problem: Problem) -> None:
     order = np.arange(problem.visit_count, dtype=np.int64)
     first = _run(problem, seed=5)

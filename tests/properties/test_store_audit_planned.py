@@ -24,6 +24,7 @@ from georoute.measure import measure
 from georoute.problem import Packed, Solution, pack
 from georoute.problem.capacity import capacity
 from georoute.timetable import is_feasible, tours_of
+from tests.examples import at_most
 from tests.store_clock import after
 from tests.store_helpers import FRIDAY, example_plan, example_programme, local
 
@@ -135,7 +136,7 @@ def assembled(
     )
 
 
-@settings(max_examples=40)
+@settings(max_examples=at_most(40))
 @given(
     registers(),
     st.sampled_from(METHODS),

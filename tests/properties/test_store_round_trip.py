@@ -33,6 +33,7 @@ from georoute.domain.programme import Programme, RegisterSource
 from georoute.domain.run import Effort
 from georoute.domain.sites import Base, OpenInterval, Site, Visit
 from georoute.store import read_plan, write_plan
+from tests.examples import at_most
 from tests.store_helpers import example_plan, example_programme
 
 K = TypeVar("K")
@@ -283,7 +284,7 @@ def wall_times(plan: Plan) -> list[str]:
     return [moment.isoformat() for moment in times]
 
 
-@settings(max_examples=25)
+@settings(max_examples=at_most(25))
 @given(plans())
 def test_any_plan_comes_back_as_it_was(plan: Plan) -> None:
     with tempfile.TemporaryDirectory() as folder:

@@ -130,11 +130,9 @@ def refresh(board: Board, s: Int) -> None:
     time, length, x, y, plane = board.time, board.length, board.x, board.y, board.plane
     visit, shift, stops, tour = board.visit, board.shift, board.stops, board.tour
     ahead, spot, opens, closes = board.ahead, board.spot, board.opens, board.closes
-    eligible = board.eligible
     n = tour[s, COUNT]
     here = shift[s, START]
-    depart = shift[s, OPEN]
-    now = depart
+    depart = now = shift[s, OPEN]
     wait = late = drive = far = work = load = windowed = np.int64(0)
     slack = np.int64(FOREVER)
     fits: bool | np.bool_ = True
@@ -143,16 +141,14 @@ def refresh(board: Board, s: Int) -> None:
         ahead[s, k, WAITED] = wait
         ahead[s, k, SLACK] = slack
         v = stops[s, k]
-        spot[v, WHERE] = s
-        spot[v, AT] = k
-        fits = fits and eligible[v, s]
+        spot[v, WHERE], spot[v, AT] = s, k
+        fits = fits and board.eligible[v, s]
         there = visit[v, PLACE]
         way = leg(time, x, y, plane, 0, here, there)
         drive += way
         far += leg(length, x, y, plane, 1, here, there)
         now += way
-        first = visit[v, FIRST]
-        last = visit[v, LAST]
+        first, last = visit[v, FIRST], visit[v, LAST]
         if first < last:
             windowed = np.int64(1)
             while first < last and now > closes[first]:
@@ -181,10 +177,8 @@ def refresh(board: Board, s: Int) -> None:
     duration = finish - depart
     fits = fits and late == 0 and drive < UNREACHABLE and load <= shift[s, MOST_LOAD]
     fits = fits and finish <= shift[s, CLOSE] and duration <= shift[s, LIMIT]
-    tour[s, DRIVE] = drive
-    tour[s, LENGTH] = far
-    tour[s, WORKED] = work
-    tour[s, LOADED] = load
+    tour[s, DRIVE], tour[s, LENGTH] = drive, far
+    tour[s, WORKED], tour[s, LOADED] = work, load
     tour[s, WINDOWED] = windowed
     tour[s, FITS] = 1 if fits or n == 0 else 0
     tour[s, MONEY] = price(shift, board.rate, s, duration, far) if n > 0 else 0

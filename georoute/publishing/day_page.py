@@ -17,7 +17,7 @@ if TYPE_CHECKING:
 __all__ = ["day_page", "view_of"]
 
 _SCRIPTS = ("base.js", "labels.js", "map.js", "day.js")
-_STYLES = ("page.css", "day.css")
+_STYLES = ("page.css", "day.css", "print.css")
 
 
 def view_of(edition: Edition, tour: DayTour) -> DayView:
@@ -37,6 +37,7 @@ def _island(edition: Edition, view: DayView) -> dict[str, object]:
     times = [f"{out} · {back}"] if len(bases) == 1 else [out, back]
     return {
         "words": words.for_scripts(),
+        "side": edition.side(),
         "tour": {
             "hue": view.look.hue,
             "outlined": view.look.outlined,

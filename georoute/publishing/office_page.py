@@ -17,7 +17,7 @@ if TYPE_CHECKING:
 __all__ = ["office_page"]
 
 _SCRIPTS = ("base.js",)
-_STYLES = ("page.css", "office.css")
+_STYLES = ("page.css", "office.css", "print.css")
 
 
 def office_page(edition: Edition) -> str:

@@ -52,7 +52,7 @@ class OfficeParts:
             kind = _COST_KINDS[part.kind]
             if part.kind == "days":
                 # the number of days is no estimate
-                quantity = words("count_days", count=round(part.quantity))
+                quantity = str(round(part.quantity))
                 amount = figures.plain_amount(part.amount)
             elif part.kind == "distance":
                 quantity = figures.length(part.quantity * 1000)

@@ -16,7 +16,7 @@ if TYPE_CHECKING:
 __all__ = ["overview_page"]
 
 _SCRIPTS = ("base.js", "labels.js", "map.js", "overview.js")
-_STYLES = ("page.css", "overview.css")
+_STYLES = ("page.css", "overview.css", "print.css")
 
 
 _STEP_DEG = 1e-5
@@ -76,6 +76,7 @@ def _island(edition: Edition, view: OverviewView) -> dict[str, object]:
 
     return {
         "words": words.for_scripts(),
+        "side": edition.side(),
         "bases": [base.name for base in index.bases.values()],
         "base_places": _differences([_steps(edition, base) for base in index.bases.values()]),
         "tours": [strand(row) for row in view.rows],
@@ -91,7 +92,7 @@ def _column_words(view: OverviewView) -> str:
     for number, word in enumerate(view.columns, start=2):
         text = word.replace("\\", "\\\\").replace('"', '\\"')
         rules.append(f'.tours td:nth-of-type({number})::before{{content:"{text}"}}')
-    return f"@media (max-width:899px){{{''.join(rules)}}}"
+    return f"@media screen and (max-width:899px){{{''.join(rules)}}}"
 
 
 def overview_page(edition: Edition) -> str:

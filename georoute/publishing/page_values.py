@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from georoute.publishing.day_view import PlanIndex
+from georoute.publishing.driving_side import drives_on_left
 from georoute.publishing.figures import Figures
 from georoute.publishing.names import slugs_of
 from georoute.publishing.words import words_for
@@ -57,6 +58,10 @@ class Edition:
     def lon(self, lon_deg: float) -> float:
         """Return a longitude on the same side of the date line as the first base."""
         return round(near_lon(lon_deg, self.plan.programme.bases[0].lon_deg), 6)
+
+    def side(self) -> int:
+        """Return on which side of a way a cord lies: 1 for the right, -1 for the left."""
+        return -1 if drives_on_left(self.plan.programme.zone) else 1
 
     def travel_note(self) -> str:
         """Return what the travel figures are, and their interval."""

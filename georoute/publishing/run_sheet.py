@@ -30,7 +30,7 @@ def run_sheet(edition: Edition, tour: DayTour) -> str:
             **edition.common(),
             title=words("day_title", date=view.date_long, inspector=view.inspector),
             day=view,
-            sketch=sketch_of(view, words),
+            sketch=sketch_of(view, words, side=edition.side()),
             width=WIDTH,
             height=HEIGHT,
             plate_height=PLATE_HEIGHT,

@@ -89,13 +89,13 @@ def _to_paper(view: DayView) -> tuple[NDArray[np.float64], float]:
     return np.column_stack([x, y]), unit_m
 
 
-def _legs(points: NDArray[np.float64], bases: int) -> NDArray[np.float64]:
-    """Return the legs in order, shape (stops + 1, 4), a little to the right of their way."""
+def _legs(points: NDArray[np.float64], bases: int, side: int) -> NDArray[np.float64]:
+    """Return the legs in order, shape (stops + 1, 4), on the side that is driven on."""
     order = [0, *range(bases, len(points)), bases - 1]
     start, end = points[order[:-1]], points[order[1:]]
     step = end - start
     length = np.maximum(np.hypot(step[:, 0], step[:, 1]), 1e-9)[:, None]
-    aside = np.column_stack([-step[:, 1], step[:, 0]]) / length * _ASIDE
+    aside = np.column_stack([-step[:, 1], step[:, 0]]) / length * _ASIDE * side
     return np.column_stack([start + aside, end + aside])
 
 
@@ -133,11 +133,11 @@ def _texts(view: DayView) -> list[tuple[str, str, str]]:
     return texts
 
 
-def sketch_of(view: DayView, words: Words) -> Sketch:
-    """Return the sketch of a tour."""
+def sketch_of(view: DayView, words: Words, *, side: int = 1) -> Sketch:
+    """Return the sketch of a tour; cords lie right (``side`` 1) or left (-1) of their way."""
     points, unit_m = _to_paper(view)
     bases = len(_bases(view))
-    legs = _legs(points, bases)
+    legs = _legs(points, bases, side)
     texts = _texts(view)
     parted = [len(number) * _LETTER + 2 * _PAD if number else 0.0 for number, _, _ in texts]
     late = [2 * _PAD if state == "late" else 0.0 for _, _, state in texts]

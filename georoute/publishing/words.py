@@ -78,6 +78,7 @@ ENGLISH: dict[str, str] = {
     "theme_glare": "Glare",
     "theme_night": "Night",
     "no_script": "The map needs JavaScript. The run list says the same in words.",
+    "print_note": "The map of this page is for the screen; run sheets have a sketch for paper.",
     "no_script_overview": "The map needs JavaScript. The table says the same in words.",
     # day page
     "day_title": "{date} · {inspector}",
@@ -196,6 +197,8 @@ ENGLISH: dict[str, str] = {
     "reason_load_limit": "load limit",
     "reason_not_found_by_search": "no place found by the search (not proven impossible)",
     # run sheet
+    "arrive_latest": "arrive, latest",
+    "latest_short": "latest {time}",
     "sheet_order": "No.",
     "sheet_site": "Site, address, access",
     "sheet_actual": "Actual",

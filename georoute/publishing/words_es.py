@@ -69,6 +69,7 @@ SPANISH: dict[str, str] = {
     "theme_glare": "Sol",
     "theme_night": "Noche",
     "no_script": "El mapa necesita JavaScript. La lista de paradas dice lo mismo en palabras.",
+    "print_note": "El mapa de esta página es para la pantalla; las hojas de ruta llevan croquis.",
     "no_script_overview": "El mapa necesita JavaScript. La tabla dice lo mismo en palabras.",
     # day page
     "day_title": "{date} · {inspector}",
@@ -187,6 +188,8 @@ SPANISH: dict[str, str] = {
     "reason_load_limit": "límite de carga",
     "reason_not_found_by_search": "la búsqueda no halló lugar (no se demostró imposible)",
     # run sheet
+    "arrive_latest": "llegar, a más tardar",
+    "latest_short": "máx. {time}",
     "sheet_order": "N.º",
     "sheet_site": "Sitio, dirección, acceso",
     "sheet_actual": "Real",

@@ -37,20 +37,19 @@ OFFICE_ENGLISH: dict[str, str] = {
     "weeks_enough": "Week by week, shifts and overtime are not less than the work that falls due.",
     "weeks_note": "h:min. Work counts with access, shift hours less write-up; travel comes on top. "
     "What was due before the first date falls to the first week.",
-    "weeks_rest": "In no week: {without} visits without a due date ({without_hours}) and {later} "
-    "visits due after the last date ({later_hours}).",
+    "weeks_rest": "In no week: visits without a due date: {without} ({without_hours}); visits "
+    "due after the last date: {later} ({later_hours}).",
     # dates
     "dates": "Due dates and opening hours",
     "visited": "Visited",
     "days_late": "Days late",
-    "past_due": "{count} visits are placed after their due date, the worst by {days} days.",
-    "none_past_due": "No visit is placed after its due date.",
-    "overdue_before": "{count} visits were overdue before the first date; {left} of these are not "
-    "placed.",
-    "left_due": "{count} visits that fall due by the last date are not placed.",
-    "past_latest": "{count} visits are placed after their latest date.",
-    "late_stops": "{count} stops are late for opening hours, the worst by {minutes} min.",
-    "none_late": "No stop is late for opening hours.",
+    "past_due": "Visits placed after their due date: {count}; days late at worst: {days}.",
+    "none_past_due": "Visits placed after their due date: none.",
+    "overdue_before": "Visits overdue before the first date: {count}, of which not placed: {left}.",
+    "left_due": "Visits due by the last date and not placed: {count}.",
+    "past_latest": "Visits placed after their latest date: {count}.",
+    "late_stops": "Stops late for opening hours: {count}, at worst by {minutes} min.",
+    "none_late": "Stops late for opening hours: none.",
     # cost
     "cost_parts": "What it costs",
     "part": "Part",
@@ -65,7 +64,6 @@ OFFICE_ENGLISH: dict[str, str] = {
     "rate_overtime": "{money} an hour",
     "rate_distance": "{money} a km",
     "rate_days": "{money} a day",
-    "count_days": "{count} days",
     "cost_plot": "One bar for the whole cost, divided into paid hours, overtime, distance and days "
     "opened.",
     # stages
@@ -100,17 +98,17 @@ OFFICE_ENGLISH: dict[str, str] = {
     "sum_hours": "Sum",
     "all_inspector_days": "All inspector-days",
     "per_inspector": "Sums of inspectors",
-    "days_and_hours": "{count} days, {hours}",
+    "days_and_hours": "days: {count}, {hours}",
     "balance_plot": "A row for each inspector with a mark for each day at its hours, a line from "
     "the shortest to the longest day, and a tick at the median.",
     "balance_note": "h:min from leaving the base to the end of the write-up. Spread is most less "
     "least: it tells of the two ends only, so see the marks between.",
     # shape
     "shape": "Shape of the tours",
-    "shape_mean": "Stops lie {length} from the centre of their day's stops, on average.",
-    "shape_near": "{pairs} pairs of stops within {near} of each other are served on different "
-    "days ({stops} stops).",
-    "shape_crossing": "{count} of {tours} tours cross themselves.",
+    "shape_mean": "Mean distance of stops to the centre of their day: {length}.",
+    "shape_near": "Pairs of stops within {near} of each other on different days: {pairs}; stops "
+    "concerned: {stops}.",
+    "shape_crossing": "Tours that cross themselves: {count} of {tours}.",
     "to_centre": "Mean distance to centre",
     "crosses": "Crosses itself",
     "shape_note": "Measured on straight lines. With opening hours or on roads a tour that crosses "
@@ -174,21 +172,21 @@ OFFICE_SPANISH: dict[str, str] = {
     "weeks_enough": "Semana a semana, turnos y sobretiempo no son menos que el trabajo que vence.",
     "weeks_note": "h:min. El trabajo cuenta con su acceso, las horas de turno sin el informe; el "
     "viaje viene aparte. Lo vencido antes de la primera fecha cae en la primera semana.",
-    "weeks_rest": "En ninguna semana: {without} visitas sin vencimiento ({without_hours}) y "
-    "{later} visitas que vencen después de la última fecha ({later_hours}).",
+    "weeks_rest": "En ninguna semana: visitas sin vencimiento: {without} ({without_hours}); "
+    "visitas que vencen después de la última fecha: {later} ({later_hours}).",
     # dates
     "dates": "Vencimientos y horarios",
     "visited": "Visitada",
     "days_late": "Días de atraso",
-    "past_due": "{count} visitas están colocadas después de su vencimiento, la peor por {days} "
-    "días.",
-    "none_past_due": "Ninguna visita está colocada después de su vencimiento.",
-    "overdue_before": "{count} visitas estaban vencidas antes de la primera fecha; {left} de ellas "
-    "están sin colocar.",
-    "left_due": "{count} visitas que vencen hasta la última fecha están sin colocar.",
-    "past_latest": "{count} visitas están colocadas después de su última fecha.",
-    "late_stops": "{count} paradas llegan tarde para su horario, la peor por {minutes} min.",
-    "none_late": "Ninguna parada llega tarde para su horario.",
+    "past_due": "Visitas colocadas después de su vencimiento: {count}; días de atraso, a lo "
+    "peor: {days}.",
+    "none_past_due": "Visitas colocadas después de su vencimiento: ninguna.",
+    "overdue_before": "Visitas vencidas antes de la primera fecha: {count}, de ellas sin "
+    "colocar: {left}.",
+    "left_due": "Visitas que vencen hasta la última fecha y están sin colocar: {count}.",
+    "past_latest": "Visitas colocadas después de su última fecha: {count}.",
+    "late_stops": "Paradas tarde para su horario: {count}, a lo peor por {minutes} min.",
+    "none_late": "Paradas tarde para su horario: ninguna.",
     # cost
     "cost_parts": "Lo que cuesta",
     "part": "Parte",
@@ -203,7 +201,6 @@ OFFICE_SPANISH: dict[str, str] = {
     "rate_overtime": "{money} por hora",
     "rate_distance": "{money} por km",
     "rate_days": "{money} por día",
-    "count_days": "{count} días",
     "cost_plot": "Una barra para el costo entero, dividida en horas pagadas, sobretiempo, "
     "distancia y días abiertos.",
     # stages
@@ -239,17 +236,17 @@ OFFICE_SPANISH: dict[str, str] = {
     "sum_hours": "Suma",
     "all_inspector_days": "Todos los días de inspector",
     "per_inspector": "Sumas de inspectores",
-    "days_and_hours": "{count} días, {hours}",
+    "days_and_hours": "días: {count}, {hours}",
     "balance_plot": "Una fila por inspector con una marca por día en sus horas, una línea del día "
     "más corto al más largo y una raya en la mediana.",
     "balance_note": "h:min desde la salida de la base hasta el fin del informe. La dispersión es "
     "el máximo menos el mínimo: habla solo de los dos extremos; vea las marcas entre ellos.",
     # shape
     "shape": "Forma de los recorridos",
-    "shape_mean": "Las paradas están a {length} del centro de las paradas de su día, en promedio.",
-    "shape_near": "{pairs} pares de paradas a menos de {near} entre sí se atienden en días "
-    "distintos ({stops} paradas).",
-    "shape_crossing": "{count} de {tours} recorridos se cruzan a sí mismos.",
+    "shape_mean": "Distancia media de las paradas al centro de su día: {length}.",
+    "shape_near": "Pares de paradas a menos de {near} entre sí en días distintos: {pairs}; "
+    "paradas en ellos: {stops}.",
+    "shape_crossing": "Recorridos que se cruzan a sí mismos: {count} de {tours}.",
     "to_centre": "Distancia media al centro",
     "crosses": "Se cruza",
     "shape_note": "Medido en líneas rectas. Con horarios o por calles, un recorrido que se cruza "

@@ -108,8 +108,9 @@ const SurveySheet = L.Layer.extend({
   },
 });
 
-// A leg moved a little to the right of its direction, so that out and back both show.
-function aside(a, b, shift) {
+// A leg moved a little to the side that is driven on, so that out and back both show.
+function aside(a, b, by) {
+  const shift = by * data.side;
   const length = Math.hypot(b.x - a.x, b.y - a.y) || 1;
   const dx = (-(b.y - a.y) / length) * shift;
   const dy = ((b.x - a.x) / length) * shift;

@@ -55,9 +55,18 @@ def _money(tariff: Floats, duration: Int, length: Int) -> Int:
 
 @kernel
 def price_timed(
-    legs: Ints, stops: Ints, spans: Ints, limits: Ints, tariff: Floats, seq: Ints, worth: Ints
+    legs: Ints,
+    stops: Ints,
+    spans: Ints,
+    limits: Ints,
+    tariff: Floats,
+    seq: Ints,
+    latest: Int,
+    worth: Ints,
 ) -> None:
     """Fill ``worth`` for the sequence: the model of ``clock_tour`` in one pass.
+
+    Once lateness exceeds ``latest``, nothing but that is said of it.
 
     Leaving later by the forward time slack (Savelsbergh 1992, see ``clock``) shortens the day
     and leaves its finish as it is.
@@ -81,6 +90,9 @@ def price_timed(
             if now > spans[last - 1, 1]:
                 late += now - spans[last - 1, 1]
                 slack = min(slack, wait)
+                if late > latest:
+                    worth[0] = late
+                    return
             else:
                 while now > spans[first, 1]:
                     first += 1
@@ -147,7 +159,7 @@ def _try(
     """Make the exchange if it is worth more; tell whether it was made."""
     write_exchanged(seq, trial, kind, i, j, k)
     new = trial[1]
-    price_timed(legs, stops, spans, limits, tariff, trial, new)
+    price_timed(legs, stops, spans, limits, tariff, trial, worth[0], new)
     if new[0] > worth[0] or (new[0] == worth[0] and new[1] >= worth[1]):
         return False
     worth[:4] = new[:4]
@@ -283,7 +295,7 @@ def kick_and_repair_timed(
             move_at_random(seq, trial, queue, stream)
             move_at_random(seq, trial, queue, stream)
         refresh_timed(legs, seq, sums)
-        price_timed(legs, stops, spans, limits, tariff, seq, worth)
+        price_timed(legs, stops, spans, limits, tariff, seq, 1 << 60, worth)
         descend_timed(
             legs,
             stops,

@@ -81,15 +81,18 @@ def added_travel(
 @kernel
 def write_exchanged(seq: Ints, trial: Ints, kind: Int, i: Int, j: Int, k: Int) -> None:
     """Write the sequence after an exchange into row 0 of ``trial``."""
-    trial[0] = seq[0]
-    if kind == TURN:
-        trial[0, i : j + 1] = seq[0, i : j + 1][::-1]
-        return
-    size = k - j
-    first = seq[0, i : j + 1]
-    second = seq[0, j + 1 : k + 1]
-    trial[0, i : i + size] = second[::-1] if kind == SWAP_TURN_SECOND else second
-    trial[0, i + size : k + 1] = first[::-1] if kind == SWAP_TURN_FIRST else first
+    last = j if kind == TURN else k
+    size = last - j
+    for at in range(seq.shape[1]):
+        source = at
+        if i <= at <= last:
+            if at < i + size:
+                source = j + 1 + at - i if kind != SWAP_TURN_SECOND else k - (at - i)
+            elif kind in (TURN, SWAP_TURN_FIRST):
+                source = j - (at - i - size)
+            else:
+                source = at - size
+        trial[0, at] = seq[0, source]
 
 
 @kernel
@@ -108,6 +111,8 @@ def nth_exchange(seq: Ints, role: Int, step: Int, p: Int) -> tuple[Int, Int, Int
         return TURN, i, p, p if i < p else 0
     size = step % SHORT_CHAIN
     far = 1 + step // SHORT_CHAIN
+    if role >= 4 and size == 0:  # one stop alone: roles 2 and 3 move it already
+        return SWAP, p, p, 0
     if role == 2:
         j = p + size
         return SWAP, p, j, j + far if j + far <= last else 0

@@ -38,6 +38,9 @@ TRIED_WHOLE = 3
 LARGEST_BY_CLOCK = 2_000
 """Visits up to which a day is searched by its times: its tables take 16 bytes a pair."""
 
+SHARE_BY_CLOCK = 0.1
+"""Share of the kicks made when days are searched by their times: each takes far longer."""
+
 
 def _nothing_spent() -> float:
     """Tell that there is no budget in time."""
@@ -89,8 +92,10 @@ def sequence_tour(  # noqa: PLR0913 - a budget is several plain values
         return attempt.result()
     stream = new_stream(seed, shift)
 
-    def budget() -> KickBudget:
-        return KickBudget(kicks, stream=stream, should_stop=should_stop, share_spent=share_spent)
+    def budget(share: float) -> KickBudget:
+        return KickBudget(
+            int(kicks * share), stream=stream, should_stop=should_stop, share_spent=share_spent
+        )
 
     attempt.run(budget)
     return attempt.result()
@@ -178,23 +183,23 @@ class _Attempt:
             )
             self.steps.append(step)
 
-    def run(self, budget: Callable[[], KickBudget]) -> None:
+    def run(self, budget: Callable[[float], KickBudget]) -> None:
         """Search by the money of travel, and further where that is not the whole story."""
         shifts, shift = self.problem.shifts, self.shift
         hour, overtime = float(shifts.hour_rate[shift]), float(shifts.overtime_rate[shift])
         length = float(shifts.length_rate[shift])
         if hour == 0.0 and length == 0.0:
-            self._by_travel(Rates(time=1.0, length=0.0), budget())
+            self._by_travel(Rates(time=1.0, length=0.0), budget(1.0))
         else:
-            self._by_travel(Rates(time=hour, length=length), budget())
+            self._by_travel(Rates(time=hour, length=length), budget(1.0))
         duration = self.times.finish_ms - self.times.depart_ms
         if length > 0.0 and duration > shifts.paid_ms[shift] and overtime != hour:
-            self._by_travel(Rates(time=overtime, length=length), budget())
+            self._by_travel(Rates(time=overtime, length=length), budget(1.0))
         if length > 0.0 and self.worth[0] > 0:
-            self._by_travel(Rates(time=1.0, length=0.0), budget())
+            self._by_travel(Rates(time=1.0, length=0.0), budget(1.0))
         on_time = self.times.wait_ms == 0 and self.times.late_ms == 0
         if not (on_time and self.at_cheapest) and self.order.shape[0] <= LARGEST_BY_CLOCK:
-            self._by_clock(budget())
+            self._by_clock(budget(SHARE_BY_CLOCK))
 
     def _by_travel(self, rates: Rates, budget: KickBudget) -> None:
         """Offer the cheapest order by the money of legs alone, in both directions.

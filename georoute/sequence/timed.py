@@ -26,8 +26,9 @@ __all__ = ["by_closing", "order_timed"]
 
 HEAT = 0.1
 """Temperature at the start, as a share of the day's travel money per leg."""
-KICKS_A_CALL = 50
-STEPS_A_CALL = 100
+KICKS_A_CALL = 10
+STEPS_A_CALL = 20
+NO_LIMIT = 1 << 60
 KINDS = {1: "two_opt", 2: "or_opt"}
 
 
@@ -83,7 +84,7 @@ class _Search:
         self.queue = new_queue(np.arange(m))
         refresh_timed(self.legs, self.seq, self.sums)
         day = (self.legs, self.stops, self.spans, self.limits)
-        price_timed(*day, self.tariff, self.seq, self.worth)
+        price_timed(*day, self.tariff, self.seq, NO_LIMIT, self.worth)
         travel_money = float(rates[0] * self.worth[2] + rates[2] * self.worth[3])
         self.heat = HEAT * travel_money / (m + 1)
         self.late_rate = travel_money / max(1.0, float(self.worth[2]))

@@ -125,7 +125,7 @@ def test_days_of_eleven_visits_cost_what_dynamic_programming_finds(
 @pytest.mark.slow
 @given(problem=days(most=6, windows=True))
 def test_small_days_with_windows_are_worth_what_trying_all_orders_finds(problem: Problem) -> None:
-    found = _run(problem, kicks=300)
+    found = _run(problem, kicks=1_000)
     ways = permutations(range(problem.visit_count))
     best = min(clock_worth(problem, way) for way in ways)
     assert clock_worth(problem, found.order) == best

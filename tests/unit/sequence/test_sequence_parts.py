@@ -108,7 +108,7 @@ def test_the_fast_price_of_a_timed_day_is_the_price_of_the_clock(
     search = _Search(problem, 0, order)
     worth = np.zeros(4, np.int64)
     day = (search.legs, search.stops, search.spans, search.limits)
-    price_timed(*day, search.tariff, search.seq, worth)
+    price_timed(*day, search.tariff, search.seq, 1 << 60, worth)
     assert (int(worth[0]), int(worth[1])) == clock_worth(problem, order)
 
 

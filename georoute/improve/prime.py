@@ -12,6 +12,7 @@ from georoute.kernels.board import INFEASIBLE, WHERE
 from georoute.kernels.day_step import begin_step, keep_step, step_in, step_out, undo_step
 from georoute.kernels.insertion import best_place
 from georoute.kernels.placement import (
+    cheapest_push,
     excess_visit,
     fill_rises,
     next_pick,
@@ -82,7 +83,8 @@ def prime() -> None:
     best_place(board, 1, 1, INFEASIBLE)
     fill_rises(board, queue, np.array([0]), np.array([0, 1]), rises)
     next_pick(board, queue, rises)
-    trade_place(board, step, 1, 0, 0, 1)
+    trade_place(board, step, 1, np.array([0]), 0, 1)
+    cheapest_push(board, step, 1, np.array([0]), scratch, np.array([-1, 0, 0]))
     push_out(board, step, 1, 0, scratch)
     undo_step(board, step)
     close_day(board, step, 0, scratch, 1)

@@ -11,9 +11,10 @@ from georoute.improve.moves import Move, RelocateResult, read_move
 from georoute.improve.prime import prime
 from georoute.improve.state import make_step
 from georoute.kernels.board import COUNT, FITS, INFEASIBLE, MONEY, RANK, WHERE, WINDOWED
-from georoute.kernels.day_step import begin_step, keep_step, step_in, step_out, undo_step
+from georoute.kernels.day_step import begin_step, keep_step, step_in, step_out
 from georoute.kernels.insertion import best_place
 from georoute.kernels.placement import (
+    cheapest_push,
     excess_visit,
     fill_rises,
     next_pick,
@@ -41,6 +42,8 @@ WORK_PER_CALL = 20_000
 """Positions judged between two looks at the clock: some milliseconds."""
 WIDE_UP_TO = 600
 """Up to so many visits every search for a place goes through all tours."""
+STOPS_PER_CALL = 400
+"""Stops of the tours gone through between two looks at the clock, where each is taken out."""
 LOCAL_SCAN = 1_000
 """Positions judged for one visit where only nearby tours are looked at."""
 ABSENT_PER_ROUND = 20
@@ -129,11 +132,16 @@ class _Relocation:
 
     def make_room(self, v: int) -> bool:
         """Find a place for ``v``, left out until now, by moving one other visit."""
-        for s in np.flatnonzero(self.problem.visits.eligible[v]):
-            count = int(self.board.tour[s, COUNT])
-            chunk = max(1, WORK_PER_CALL // (self.scan + count))
-            for begin in range(0, count, chunk):
-                if trade_place(self.board, self.step, v, s, begin, begin + chunk):
+        shifts = np.flatnonzero(self.problem.visits.eligible[v])
+        longest = int(self.board.tour[:, COUNT].max(initial=0))
+        several = max(1, STOPS_PER_CALL // max(1, longest))
+        stops = max(1, WORK_PER_CALL // (self.scan + longest))
+        for first in range(0, shifts.size, several):
+            some = shifts[first : first + several]
+            # Only where tours are very long is one of them too much for a call.
+            width = longest if several > 1 else stops
+            for begin in range(0, longest, max(1, width)):
+                if trade_place(self.board, self.step, v, some, begin, begin + width):
                     self.keep("make_room")
                     return True
                 self.look()
@@ -142,19 +150,16 @@ class _Relocation:
     def push_in(self, v: int) -> bool:
         """Put ``v`` in at the price of visits that are left out before it, the least loss."""
         spare = np.empty(self.problem.visit_count, np.int64)
-        best: tuple[tuple[int, ...], int] | None = None
-        best_shift = -1
-        kit = (self.board, self.step, v)
-        for s in np.flatnonzero(self.problem.visits.eligible[v]):
-            if push_out(*kit, s, spare):
-                touched = self.step.touched[: self.step.size[0]]
-                rise = int((self.board.tour[touched, MONEY] - self.step.money[touched]).sum())
-                key = (tuple(self.step.lost.tolist()), rise)
-                if best is None or key < best:
-                    best, best_shift = key, int(s)
-                undo_step(self.board, self.step)
+        found = np.zeros(2 + self.step.lost.shape[0], np.int64)
+        found[0] = -1
+        shifts = np.flatnonzero(self.problem.visits.eligible[v])
+        longest = int(self.board.tour[:, COUNT].max(initial=0))
+        several = max(1, STOPS_PER_CALL // max(1, longest))
+        for first in range(0, shifts.size, several):
+            some = shifts[first : first + several]
+            cheapest_push(self.board, self.step, v, some, spare, found)
             self.look()
-        if best_shift >= 0 and push_out(*kit, best_shift, spare):
+        if found[0] >= 0 and push_out(self.board, self.step, v, int(found[0]), spare):
             self.keep("push_out")
             return True
         return False

@@ -17,6 +17,7 @@ from georoute.kernels.board import (
     LIMIT,
     LOAD,
     LOADED,
+    MONEY,
     MOST_LOAD,
     OPEN,
     PLACE,
@@ -43,7 +44,14 @@ from georoute.kernels.day_step import (
 from georoute.kernels.insertion import best_place
 from georoute.kernels.shortage import closing, start_at, way
 
-__all__ = ["excess_visit", "fill_rises", "next_pick", "push_out", "trade_place"]
+__all__ = [
+    "cheapest_push",
+    "excess_visit",
+    "fill_rises",
+    "next_pick",
+    "push_out",
+    "trade_place",
+]
 
 EXACT_STOPS = 200
 """Up to so many stops, each removal is judged by the clock; beyond, by the time it frees."""
@@ -196,21 +204,7 @@ def next_pick(board: Board, bank: NDArray[np.int64], rises: NDArray[np.int64]) -
 
 
 @kernel
-def trade_place(
-    board: Board,
-    step: Step,
-    v: Int,
-    s: Int,
-    begin: Int,
-    end: Int,
-) -> bool:
-    """Make room in shift ``s`` for ``v``, left out until now, by moving one visit elsewhere.
-
-    Tries the stops ``begin .. end - 1`` of the tour one by one; returns whether that worked.
-    """
-    begin_step(step)
-    if not board.eligible[v, s]:
-        return False
+def _trade_in(board: Board, step: Step, v: Int, s: Int, begin: Int, end: Int) -> bool:
     room = min(board.shift[s, LIMIT], board.shift[s, CLOSE] - board.shift[s, OPEN])
     room -= board.tour[s, DRIVE] + board.tour[s, WORKED] + board.shift[s, WRITE_UP]
     for k in range(begin, min(end, board.tour[s, COUNT])):
@@ -233,6 +227,23 @@ def trade_place(
                     return True
         undo_step(board, step)
     return False
+
+
+@kernel
+def trade_place(
+    board: Board, step: Step, v: Int, shifts: NDArray[np.int64], begin: Int, end: Int
+) -> bool:
+    """Make room for ``v``, left out until now, by moving one visit of ``shifts`` elsewhere.
+
+    Tries the stops ``begin .. end - 1`` of each of the shifts; returns whether that worked.
+    """
+    begin_step(step)
+    made = False
+    for s in shifts:
+        if board.eligible[v, s] and _trade_in(board, step, v, s, begin, end):
+            made = True
+            break
+    return made
 
 
 @kernel
@@ -271,6 +282,7 @@ def push_out(
         u = _least_loss(board, s, v)
         if u < 0:
             break
+        has_place(board, step, u, s)  # notes where to look no more
         step_out(board, step, u)
         spare[gone] = u
         gone += 1
@@ -291,3 +303,39 @@ def push_out(
             return True
     undo_step(board, step)
     return False
+
+
+@kernel
+def _beats(step: Step, rise: Int, found: NDArray[np.int64]) -> bool:
+    """Tell whether the open step loses less than the one in ``found``, or costs less."""
+    for c in range(step.lost.shape[0]):
+        if step.lost[c] != found[2 + c]:
+            return bool(step.lost[c] < found[2 + c])
+    return bool(rise < found[1])
+
+
+@kernel
+def cheapest_push(
+    board: Board,
+    step: Step,
+    v: Int,
+    shifts: NDArray[np.int64],
+    spare: NDArray[np.int64],
+    found: NDArray[np.int64],
+) -> None:
+    """Find the shift of ``shifts`` where ``push_out`` of ``v`` loses least, then costs least.
+
+    ``found`` (int64, (2 + C,)): the best shift so far or -1, its rise of money and its change of
+    the loss of each class; updated. Everything is taken back.
+    """
+    for s in shifts:
+        if push_out(board, step, v, s, spare):
+            rise = np.int64(0)
+            for k in range(step.size[0]):
+                t = step.touched[k]
+                rise += board.tour[t, MONEY] - step.money[t]
+            if found[0] < 0 or _beats(step, rise, found):
+                found[0] = s
+                found[1] = rise
+                found[2:] = step.lost
+            undo_step(board, step)

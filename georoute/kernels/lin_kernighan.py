@@ -5,12 +5,11 @@ sum gained stays positive: S. Lin, B. Kernighan, "An effective heuristic algorit
 traveling-salesman problem", Operations Research 21 (1973) 498-516. Depth 1 is the 2-opt of
 G. Croes, Operations Research 6 (1958) 791-812; the exchange of two neighbouring stretches
 covers I. Or's moves of short chains (PhD thesis, Northwestern University, 1976). Kicks are
-double bridges: O. Martin, S. Otto, E. Felten, Complex Systems 5 (1991) 299-326; here between
-four places near each other, so that repair is local. We differ from Lin and Kernighan in that
-the first exchange that closes with a gain is taken, and a leg put in may be taken out again.
+double bridges: O. Martin, S. Otto, E. Felten, Complex Systems 5 (1991) 299-326; here local.
+Unlike there, the first exchange that gains is taken; a leg put in may go again.
 
-All arrays are int64 unless said otherwise. ``table, points, price``: see ``day_net``; ``tour``
-and ``log``: see ``flips``; ``queue``: see ``node_queue``. ``near`` (n, K, 2): neighbours of each
+Arrays are int64 unless said otherwise. ``table, points, price``: see ``day_net``; ``tour``,
+``log``: see ``flips``; ``queue``: see ``node_queue``. ``near`` (n, K, 2): neighbours of each
 node, nearest first, and what they cost. ``chain`` (depth, 5 + 3 B) is scratch; row k holds how
 many candidates there are at depth k, the next one, t2, the gain so far, the most candidates
 allowed (set by ``new_chain``), then t3, t4 and gain of each.

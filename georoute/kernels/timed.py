@@ -296,19 +296,7 @@ def kick_and_repair_timed(
             move_at_random(seq, trial, queue, stream)
         refresh_timed(legs, seq, sums)
         price_timed(legs, stops, spans, limits, tariff, seq, 1 << 60, worth)
-        descend_timed(
-            legs,
-            stops,
-            spans,
-            limits,
-            tariff,
-            seq,
-            sums,
-            worth,
-            trial,
-            queue,
-            1 << 40,
-        )
+        descend_timed(legs, stops, spans, limits, tariff, seq, sums, worth, trial, queue, 1 << 40)
         limit = dearer_by(stream, heat, before + done, total, spent)
         later = worth[0] - kept_worth[0]
         dearer = worth[1] - kept_worth[1] + late_rate * later

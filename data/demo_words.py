@@ -193,6 +193,7 @@ last_date = 2027-03-05
 
 [register]
 path = "register.csv"
+credit = "© OpenStreetMap contributors (ODbL)"
 
 [[base]]
 base_id = "norte"

@@ -371,6 +371,7 @@ def hostile_plan() -> Plan:
     setting = plan.programme
     setting = replace(
         setting,
+        register=replace(setting.register, credit=HOSTILE[0]),
         title=HOSTILE[1],
         bases=tuple(replace(base, name=HOSTILE[1]) for base in setting.bases),
         inspectors=tuple(replace(person, name=HOSTILE[3]) for person in setting.inspectors),

@@ -69,7 +69,8 @@ class RegisterSource:
     """Where the register is and how to read it.
 
     ``columns`` maps georoute's column names to the headers of the file. ``crs`` is used where
-    the file does not say (coordinates in other columns than degrees).
+    the file does not say (coordinates in other columns than degrees). ``credit`` names the
+    makers of its data where their licence asks for it; it stands on every page.
     """
 
     path: str
@@ -77,6 +78,7 @@ class RegisterSource:
     sheet: str | None = None
     layer: str | None = None
     crs: str | None = None
+    credit: str = ""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -95,6 +95,7 @@ class Edition:
     def common(self) -> dict[str, object]:
         """Return the values that every template asks for."""
         words = self.figures.words
+        credit = self.plan.programme.register.credit
         return {
             "words": words,
             "marked": self.figures.marked,
@@ -105,6 +106,7 @@ class Edition:
             "revision": words("revision", revision=self.plan.provenance.revision),
             "issued": self.figures.issued(self.issued),
             "travel_note": self.travel_note(),
+            "credit": words("data_credit", credit=credit) if credit else "",
             "map_note": words("straight_estimated" if self.figures.estimated else "straight"),
             "times_note": words("times_estimated") if self.figures.estimated else "",
             "about": self.about(),

@@ -63,6 +63,7 @@ ENGLISH: dict[str, str] = {
     "stop_rule_seconds_used": "seconds used",
     "stop_rule_interrupted": "interrupted",
     "register_hash": "Register {source}, SHA-256 {digest}",
+    "data_credit": "Data: {credit}",
     "about": "About this page",
     "library": "Map drawn with Leaflet 1.9.4 (BSD 2-Clause; licence text in the page source).",
     # page frame

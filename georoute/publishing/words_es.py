@@ -53,6 +53,7 @@ SPANISH: dict[str, str] = {
     "stop_rule_seconds_used": "segundos agotados",
     "stop_rule_interrupted": "interrumpida",
     "register_hash": "Registro {source}, SHA-256 {digest}",
+    "data_credit": "Datos: {credit}",
     "about": "Acerca de esta página",
     "library": "Mapa dibujado con Leaflet 1.9.4 (BSD 2-Clause; licencia en el código de la "
     "página).",

@@ -245,4 +245,5 @@ def _register_source(path: Path, section: RegisterSection) -> RegisterSource:
         sheet=section.sheet or None,
         layer=section.layer or None,
         crs=section.crs or None,
+        credit=section.credit,
     )

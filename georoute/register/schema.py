@@ -142,6 +142,10 @@ class RegisterSection(Section):
         description="Coordinate system of a file that does not state its own, for instance "
         "`EPSG:32719`; empty: WGS 84 in degrees.",
     )
+    credit: Text = Field(
+        default="",
+        description="Credit that the licence of your data asks for; it stands on every page.",
+    )
     columns: dict[str, Text] = Field(
         default_factory=dict,
         description="Foreign headers: `column of georoute = header of the file`.",

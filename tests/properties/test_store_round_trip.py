@@ -235,6 +235,7 @@ def programmes(draw: st.DrawFn) -> Programme:
         sheet=maybe(texts),
         layer=maybe(texts),
         crs=maybe(texts),
+        credit=texts,
     )
     return replace(
         programme,

@@ -35,6 +35,7 @@ path = "in/sites.xlsx"
 sheet = "2027"
 layer = "l"
 crs = "EPSG:25833"
+credit = "Town of Example, open data"
 [register.columns]
 site_id = "Nr"
 lat = "Hochwert"
@@ -150,6 +151,7 @@ def test_every_key_arrives(tmp_path: Path) -> None:
     assert programme.register.path == str(tmp_path / "in/sites.xlsx")
     assert (programme.register.sheet, programme.register.layer) == ("2027", "l")
     assert programme.register.crs == "EPSG:25833"
+    assert programme.register.credit == "Town of Example, open data"
     assert dict(programme.register.columns) == {"site_id": "Nr", "lat": "Hochwert"}
     assert (ana.name, ana.start_base_id, ana.end_base_id) == ("ana", "n", "n")
     assert (ana.shift_start, ana.shift_end, ana.paid_s) == (time(7, 30), time(16), 28_800.0)

@@ -38,9 +38,9 @@ def findings_json(findings: Sequence[Finding]) -> list[dict[str, object]]:
 
 def _check_plan(path: Path) -> tuple[Finding, ...]:
     from georoute.audit import audit
-    from georoute.store import read_plan
+    from georoute.store import check_derived, read_plan
 
-    return audit(read_plan(path))
+    return (*audit(read_plan(path)), *check_derived(path))
 
 
 def _check_programme(path: Path) -> tuple[Finding, ...]:
@@ -93,17 +93,20 @@ def check(
     ] = None,
     column: Annotated[
         list[str] | None,
-        typer.Option(help="NAME=HEADER: which header of the file holds a column."),
+        typer.Option(
+            metavar="NAME=HEADER", help="Which header of the file holds a column; repeatable."
+        ),
     ] = None,
     report: Annotated[
         Path | None, typer.Option(help="Also write the findings to this .csv or .json file.")
     ] = None,
     json: Annotated[bool, typer.Option("--json", help="Print the findings as JSON.")] = False,
 ) -> None:
-    """Check a programme with its register, a register alone, or a finished plan.
+    """Check a register, a programme or a plan.
 
-    All faults are told at once, each with its row, column, value and remedy. For a plan the audit
-    recomputes every clock time, limit and cost from the inputs.
+    A programme is checked with its register. All faults are told at once, each with its row,
+    column, value and remedy. For a plan the audit recomputes every clock time, limit and cost
+    from the inputs.
     """
     from georoute.register import check_register, write_findings
     from georoute.store import is_plan_file

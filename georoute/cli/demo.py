@@ -41,7 +41,9 @@ def _write_inputs(folder: Path) -> None:
 def demo(
     folder: Annotated[Path, typer.Argument(help="Folder for the demo.")] = Path("georoute-demo"),
 ) -> None:
-    """Write an invented register and programme, plan them, and publish the pages.
+    """Write, plan and publish the demo.
+
+    The demo is an invented inspection office with its register and programme.
 
     Files of the demo that are in the folder already are kept, so that you can change them and
     run it again.
@@ -54,7 +56,7 @@ def demo(
         raise OutputError(msg)
     _write_inputs(folder)
     finished = plan_and_write(read_programme(folder / "programme.toml"), folder / "plan.gpkg")
-    print_plan(finished)
+    print_plan(finished, capacity=False)
     pages = publish(finished, folder / "maps")
     stderr().print(f"{len(pages)} pages: open {folder / 'maps' / 'index.html'}")
     print_caution()

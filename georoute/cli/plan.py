@@ -20,6 +20,8 @@ if TYPE_CHECKING:
 
 __all__ = ["plan", "plan_and_write"]
 
+COMPILING = "The first run compiles the search, which takes a minute or two; later runs do not."
+
 
 def _with_search_settings(
     programme: Programme, *, effort: EffortName | None, seconds: float | None, seed: int | None
@@ -36,23 +38,26 @@ def _with_search_settings(
 
 def plan_and_write(programme: Programme, plan_file: Path, *, report: Path | None = None) -> Plan:
     """Read the register, plan it, and write the plan file; tell what matters on the way."""
-    from georoute.pipeline import make_plan, prepare
+    from georoute.pipeline import compile_search, compiled_before, make_plan, prepare
     from georoute.register import read_register, write_findings
     from georoute.store import write_plan
 
     register, findings = read_register(Path(programme.register.path), programme=programme)
-    with stop_on_interrupt() as should_stop:
-        with progress_line(programme.tariff.currency) as progress:
-            prepared = prepare(programme, register, progress=progress)
-            findings = (*findings, *prepared.findings)
-            if report is not None:
-                write_findings(findings, report)
-            print_findings(findings)
-            stderr().print(capacity_line(prepared.capacity))
+    with progress_line(programme.tariff.currency) as progress:
+        prepared = prepare(programme, register, progress=progress)
+        findings = (*findings, *prepared.findings)
+        if report is not None:
+            write_findings(findings, report)
+        print_findings(findings)
+        stderr().print(capacity_line(prepared.capacity))
+        if not compiled_before():
+            stderr().print(COMPILING)
+        compile_search(prepared, progress=progress)
+        with stop_on_interrupt() as should_stop:
             finished = make_plan(
                 prepared, progress=progress, should_stop=should_stop, issued=issue_time()
             )
-        write_plan(finished, plan_file)
+            write_plan(finished, plan_file)
     return finished
 
 
@@ -66,24 +71,33 @@ def plan(
     publish: Annotated[
         bool, typer.Option("--publish", help="Also write the pages of the plan.")
     ] = False,
-    maps: Annotated[Path, typer.Option(help="Folder for the pages.")] = Path("maps"),
+    maps: Annotated[Path, typer.Option(help="Folder for the pages, in the current folder.")] = Path(
+        "maps"
+    ),
     effort: Annotated[
         EffortName | None, typer.Option(help="How hard to search; counted in steps.")
     ] = None,
     seconds: Annotated[
         float | None,
-        typer.Option(min=0.0, help="Search for this long instead (the result may then vary)."),
+        typer.Option(
+            min=0.0,
+            metavar="SECONDS",
+            help="Search for this long instead (the result may then vary).",
+        ),
     ] = None,
-    seed: Annotated[int | None, typer.Option(min=0, help="Seed of the search.")] = None,
+    seed: Annotated[
+        int | None, typer.Option(min=0, metavar="NUMBER", help="Seed of the search.")
+    ] = None,
     report: Annotated[
         Path | None, typer.Option(help="Write warnings and notes to this .csv or .json file.")
     ] = None,
     json: Annotated[bool, typer.Option("--json", help="Print the plan as JSON.")] = False,
 ) -> None:
-    """Plan a register: which site on which day, by whom, in which order.
+    """Plan a register.
 
-    Writes the plan file, and with --publish its pages. Ctrl-C ends the search with the best plan
-    found so far. A plan that fails its own check is never written.
+    Which site on which day, by whom, in which order. Writes the plan file, and with --publish
+    its pages. Ctrl-C ends the search with the best plan found so far. A plan that fails its own
+    check is never written.
     """
     from georoute.register import read_programme
 
@@ -98,7 +112,7 @@ def plan(
     if json:
         print_json(as_json(finished))
     else:
-        print_plan(finished)
+        print_plan(finished, capacity=False)
     stderr().print(f"Plan file: {plan_file}")
     if publish:
         from georoute.publishing import publish as write_pages

@@ -16,8 +16,9 @@ def publish(
     plan: Annotated[Path, typer.Argument(help="A plan file.")],
     folder: Annotated[Path, typer.Argument(help="Folder for the pages.")] = Path("maps"),
 ) -> None:
-    """Write the pages of a plan: an overview, and a map page for each day and inspector.
+    """Write the pages of a plan.
 
+    An overview, a page for the office, and a map page and a run sheet for each day and inspector.
     Each page is one file that opens without a network. A plan that fails its check is refused.
     """
     from georoute.audit import audit

@@ -24,6 +24,7 @@ if TYPE_CHECKING:
 __all__ = [
     "clock_span",
     "count_findings",
+    "counted",
     "hours",
     "kilometres",
     "money",
@@ -45,12 +46,12 @@ WIDE = 200
 def stdout() -> Console:
     """Return a console on standard output; long lines are left to the terminal or the reader."""
     width = None if sys.stdout.isatty() else WIDE
-    return Console(highlight=False, soft_wrap=True, width=width)
+    return Console(highlight=False, markup=False, soft_wrap=True, width=width)
 
 
 def stderr() -> Console:
     """Return a console on standard error."""
-    return Console(stderr=True, highlight=False, soft_wrap=True)
+    return Console(stderr=True, highlight=False, markup=False, soft_wrap=True)
 
 
 def hours(seconds: float) -> str:
@@ -119,6 +120,11 @@ def count_findings(findings: Sequence[Finding]) -> str:
         f"{counts[Severity.FAULT]} fault(s), {counts[Severity.WARNING]} warning(s), "
         f"{counts[Severity.NOTE]} note(s)"
     )
+
+
+def counted(number: int, thing: str) -> str:
+    """Say how many of a thing there are: ``1 tour``, ``3 tours``."""
+    return f"{number} {thing}" if number == 1 else f"{number} {thing}s"
 
 
 def print_error(message: str) -> None:

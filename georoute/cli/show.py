@@ -18,7 +18,8 @@ def show(
     plan: Annotated[Path, typer.Argument(help="A plan file.")],
     *,
     day: Annotated[
-        datetime | None, typer.Option(formats=["%Y-%m-%d"], help="Only this date, stop by stop.")
+        datetime | None,
+        typer.Option(formats=["%Y-%m-%d"], metavar="DATE", help="Only this date, stop by stop."),
     ] = None,
     inspector: Annotated[
         str | None, typer.Option(help="Only this inspector (the id), stop by stop.")
@@ -28,7 +29,10 @@ def show(
     ] = False,
     json: Annotated[bool, typer.Option("--json", help="Print the plan as JSON.")] = False,
 ) -> None:
-    """Show a plan: the sums, or the stops of one date or inspector."""
+    """Show a plan in the terminal.
+
+    The sums, or the stops of one date or one inspector.
+    """
     from georoute.store import read_plan
 
     finished = read_plan(plan)

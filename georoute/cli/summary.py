@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 from rich.text import Text
 
-from georoute.cli.render import clock_span, hours, kilometres, money, new_table, stdout
+from georoute.cli.render import clock_span, counted, hours, kilometres, money, new_table, stdout
 from georoute.domain.cautions import CAUTIONS
 
 if TYPE_CHECKING:
@@ -21,9 +21,10 @@ def capacity_line(capacity: Capacity) -> str:
     """Say the capacity sum in words: work and least travel against the hours of the shifts."""
     need = capacity.work_h + capacity.least_travel_h
     line = (
-        f"Capacity: {capacity.visits} visits need {capacity.work_h:.1f} h of work and at least "
-        f"{capacity.least_travel_h:.1f} h of travel ({need:.1f} h); {capacity.shifts} shifts "
-        f"have {capacity.shift_h:.1f} h, and {capacity.overtime_h:.1f} h of overtime."
+        f"Capacity: {counted(capacity.visits, 'visit')} with {capacity.work_h:.1f} h of work and "
+        f"at least {capacity.least_travel_h:.1f} h of travel ({need:.1f} h); "
+        f"{counted(capacity.shifts, 'shift')} with {capacity.shift_h:.1f} h, "
+        f"and {capacity.overtime_h:.1f} h of overtime."
     )
     if capacity.short_h > 0:
         line += (
@@ -49,7 +50,8 @@ def _stage_line(plan: Plan) -> str:
         f"after {stage.stage} {money(stage.cost, currency)} ({stage.placed} placed)"
         for stage in plan.stages
     )
-    return "Cost " + ", ".join(told) + "."
+    note = " The first two may still break limits." if len(plan.stages) > 1 else ""
+    return "Cost " + ", ".join(told) + "." + note
 
 
 def print_unplaced(unplaced: tuple[Unplaced, ...], *, most: int | None = None) -> None:
@@ -58,20 +60,21 @@ def print_unplaced(unplaced: tuple[Unplaced, ...], *, most: int | None = None) -
     if not unplaced:
         console.print("Every visit is placed.")
         return
-    console.print(Text(f"Not placed: {len(unplaced)} visit(s)", style="bold"))
+    console.print(Text(f"Not placed: {counted(len(unplaced), 'visit')}", style="bold"))
     for item in unplaced[:most]:
         console.print(Text(f"  {item.site_id}: {item.message}  [{item.code.value}]"))
     if most is not None and len(unplaced) > most:
         console.print(f"  … and {len(unplaced) - most} more: georoute show PLAN --unplaced")
 
 
-def print_plan(plan: Plan) -> None:
+def print_plan(plan: Plan, *, capacity: bool = True) -> None:
     """Print a plan: what is not placed first, then a line for each tour, then the sums."""
     console = stdout()
     currency = plan.programme.tariff.currency
     names = {person.inspector_id: person.name for person in plan.programme.inspectors}
     console.print(Text(plan.programme.title, style="bold"))
-    console.print(Text(capacity_line(plan.capacity)))
+    if capacity:
+        console.print(Text(capacity_line(plan.capacity)))
     print_unplaced(plan.unplaced, most=WORST_SHOWN)
     figures = ("stops", "drive", "work", "wait", "over", "km", "cost")
     table = new_table("date", "out-back", *figures, "inspector", right=figures)
@@ -91,7 +94,7 @@ def print_plan(plan: Plan) -> None:
     console.print(table)
     stops = sum(len(tour.stops) for tour in plan.tours)
     console.print(
-        f"{len(plan.tours)} tours, {stops} stops, "
+        f"{counted(len(plan.tours), 'tour')}, {counted(stops, 'stop')}, "
         f"{hours(sum(tour.drive_s for tour in plan.tours))} of driving, "
         f"{kilometres(sum(tour.dist_m for tour in plan.tours))}, {money(plan.cost, currency)}."
     )
@@ -109,7 +112,7 @@ def _stop_row(plan: Plan, stop: Stop, leg_min: float) -> tuple[str | Text, ...]:
         f"{leg_min:.0f}",
         f"{stop.arrive:%H:%M}",
         f"{stop.latest_arrive:%H:%M}",
-        f"{visit.work_s / 60:.0f}",
+        f"{(visit.access_s + visit.work_s) / 60:.0f}",
         f"{stop.leave:%H:%M}",
         Text(site.site_id),
         Text(" - ".join(part for part in (site.name, site.address) if part)),
@@ -119,18 +122,21 @@ def _stop_row(plan: Plan, stop: Stop, leg_min: float) -> tuple[str | Text, ...]:
 def print_tour(plan: Plan, tour: DayTour) -> None:
     """Print one tour stop by stop."""
     console = stdout()
+    bases = {base.base_id: base.name or base.base_id for base in plan.programme.bases}
     names = {person.inspector_id: person.name for person in plan.programme.inspectors}
     console.print(
         Text(f"{tour.day:%A} {tour.day.isoformat()}, {names[tour.inspector_id]}", style="bold")
     )
     console.print(
-        f"leaves {tour.start_base_id} {tour.depart:%H:%M}, back at {tour.end_base_id} "
-        f"{tour.back:%H:%M}, finished {tour.finish:%H:%M}"
+        f"leaves {bases[tour.start_base_id]} {tour.depart:%H:%M}, back at "
+        f"{bases[tour.end_base_id]} {tour.back:%H:%M}, finished {tour.finish:%H:%M}"
     )
-    figures = ("no.", "drive min", "arrive", "latest", "work min", "leave")
+    figures = ("no.", "drive min", "arrive", "latest", "on site min", "leave")
     table = new_table(*figures, "site", "name and address", right=figures)
     for stop, leg in zip(tour.stops, tour.legs, strict=False):
         table.add_row(*_stop_row(plan, stop, leg.drive_s / 60))
+    home = (f"{tour.legs[-1].drive_s / 60:.0f}", f"{tour.back:%H:%M}")
+    table.add_row("", *home, "", "", "", "", Text(f"back at {bases[tour.end_base_id]}"))
     console.print(table)
 
 

@@ -16,10 +16,12 @@ if TYPE_CHECKING:
 
     from georoute.problem import Problem
 
-__all__ = ["facts_of", "guide_of", "ranked_loss"]
+__all__ = ["FEWER_TOURS", "facts_of", "guide_of", "ranked_loss"]
 
 NO_LEG = 1 << 52
 """Money of a leg that does not exist: dearer than any tour, and safe to add up."""
+FEWER_TOURS = 100
+"""Micro-units added to the price of a day, so that of equal plans the one with fewer tours wins."""
 NEAREST = 500
 RULE_WEIGHTS = {"random": 4.0, "demand": 4.0, "far": 2.0, "close": 1.0}
 WINDOW_WEIGHTS = {"window_length": 2.0, "opens": 2.0, "closes": 2.0}
@@ -51,7 +53,7 @@ def facts_of(problem: Problem) -> Facts:
         shifts.paid_ms,
         shifts.write_up_ms,
         shifts.load_limit,
-        shifts.day_cost,
+        shifts.day_cost + FEWER_TOURS,
         rate_class,
         _kinds(problem),
     )

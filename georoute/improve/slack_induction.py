@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from georoute.improve.guide import facts_of, guide_of
+from georoute.improve.guide import FEWER_TOURS, facts_of, guide_of
 from georoute.kernels.annealing import Book, anneal
 from georoute.kernels.random_stream import new_stream
 from georoute.kernels.slack_state import COUNT, FARE, LOSS, MONEY, STOP, rows_of, write_row
@@ -143,7 +143,8 @@ class _Search:
 
 def _value(problem: Problem, solution: Solution, loss: NDArray[np.int64]) -> tuple[int, int]:
     lost = int(loss[solution.unplaced(problem.visit_count)].sum())
-    return lost, solution_cost(problem, solution)
+    tours = sum(order.shape[0] > 0 for order in solution.orders)
+    return lost, solution_cost(problem, solution) + tours * FEWER_TOURS
 
 
 def improve(  # noqa: PLR0913 - a budget is several plain values

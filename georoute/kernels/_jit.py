@@ -14,7 +14,7 @@ import numba.core.config
 import numpy as np
 import platformdirs
 
-__all__ = ["Float", "Int", "kernel"]
+__all__ = ["Float", "Int", "compiled_before", "kernel"]
 
 Int: TypeAlias = int | np.int64
 Float: TypeAlias = float | np.float64
@@ -52,6 +52,12 @@ def _keep_kernels() -> None:
 
 
 _keep_kernels()
+
+
+def compiled_before() -> bool:
+    """Tell whether kernels of these very sources were kept by an earlier run."""
+    folder = numba.core.config.CACHE_DIR  # type: ignore[attr-defined]  # made at run time
+    return bool(folder) and any(Path(folder).glob("*/annealing.anneal*"))
 
 
 def kernel(func: Callable[P, R]) -> Callable[P, R]:

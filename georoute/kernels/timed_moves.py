@@ -84,7 +84,7 @@ def write_exchanged(seq: Ints, trial: Ints, kind: Int, i: Int, j: Int, k: Int) -
     last = j if kind == TURN else k
     size = last - j
     for at in range(seq.shape[1]):
-        source = at
+        source: Int = at
         if i <= at <= last:
             if at < i + size:
                 source = j + 1 + at - i if kind != SWAP_TURN_SECOND else k - (at - i)

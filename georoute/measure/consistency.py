@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from scipy.sparse import csr_array
@@ -66,7 +66,8 @@ def _check_reachable(grid: Grid, log: FindingLog) -> None:
     n = len(ids)
     i, j = (int(k) for k in np.argwhere(closed)[0])
     everything = count == n * (n - 1)
-    groups, label = connected_components(csr_array(~closed), directed=True, connection="strong")
+    ways: Any = csr_array(~closed)  # the stubs of scipy disagree on its shape between versions
+    groups, label = connected_components(ways, directed=True, connection="strong")
     log.add(
         cell_finding(
             grid,

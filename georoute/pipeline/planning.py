@@ -36,7 +36,7 @@ if TYPE_CHECKING:
     from georoute.pipeline.search import Found
     from georoute.problem import Packed
 
-__all__ = ["Prepared", "make_plan", "plan", "prepare"]
+__all__ = ["Prepared", "compile_search", "make_plan", "plan", "prepare"]
 
 PLAN_NAMESPACE = uuid.UUID("6d1c7a52-4c0e-5a53-9d0b-0b5f5f0c7a11")
 """A plan's id is the UUIDv5 of its inputs in this namespace: a rerun gives the same id."""
@@ -183,6 +183,16 @@ def prepare(
     )
 
 
+def compile_search(prepared: Prepared, *, progress: Progress = no_progress) -> None:
+    """Compile the kernels of the search, once for each machine and version.
+
+    A search compiles what it needs anyway; done beforehand, a limit in seconds does not pay for
+    it.
+    """
+    progress("compile", fraction=0.0)
+    warm_up(prepared.packed.problem, prepared.packed.programme.effort)
+
+
 def make_plan(
     prepared: Prepared,
     *,
@@ -201,8 +211,6 @@ def make_plan(
         The finished plan broke one of its own rules (a defect of the program, never of the input).
     """
     programme = prepared.packed.programme
-    progress("compile", fraction=0.0)
-    warm_up(prepared.packed.problem, programme.effort)
     budget = Budget(should_stop, seconds=programme.effort.seconds)
     found = search(
         prepared.packed,
@@ -255,4 +263,5 @@ def plan(
         The finished plan broke one of its own rules (a defect of the program, never of the input).
     """
     prepared = prepare(programme, register, progress=progress)
+    compile_search(prepared, progress=progress)
     return make_plan(prepared, progress=progress, should_stop=should_stop, issued=issued)

@@ -167,7 +167,10 @@ def test_ctrl_c_ends_the_search_with_the_best_plan_so_far(planned: Path, tmp_pat
     del planned  # compiled kernels are there
     folder = copy_demo(tmp_path)
     running = start(folder, "--seconds", "300")
-    time.sleep(20)
+    assert running.stderr is not None
+    while not running.stderr.readline().startswith("Capacity"):
+        assert running.poll() is None
+    time.sleep(30)  # kernels are loaded, and the search is on its way
     running.send_signal(signal.SIGINT)
     _, told = running.communicate(timeout=120)
     assert running.returncode == 0, told

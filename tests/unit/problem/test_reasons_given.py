@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from typing import Any
 
 import numpy as np
 import pytest
@@ -239,7 +240,7 @@ def test_shortest_ways_equal_scipy(outward: int) -> None:
     # Reference: scipy.sparse.csgraph.dijkstra.
     problem = random_problem(3, Recipe(visits=20, shifts=2, unreachable=0.6))
     table = problem.travel.time_ms if outward else problem.travel.time_ms.T
-    graph = np.where(table >= UNREACHABLE, np.inf, table.astype(np.float64))
+    graph: Any = np.where(table >= UNREACHABLE, np.inf, table.astype(np.float64))
     expected = dijkstra(graph, indices=1)
     ways = np.zeros(table.shape[0], np.int64)
     shortest_ways(problem.travel, 1, outward, ways)

@@ -38,7 +38,7 @@ class Piece:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class BarRow:
-    """One bar with a name at its left and a figure at its right."""
+    """One bar with a name above and a figure below it."""
 
     name: str
     figure: str

@@ -241,7 +241,7 @@ def test_shortest_ways_equal_scipy(outward: int) -> None:
     problem = random_problem(3, Recipe(visits=20, shifts=2, unreachable=0.6))
     table = problem.travel.time_ms if outward else problem.travel.time_ms.T
     graph: Any = np.where(table >= UNREACHABLE, np.inf, table.astype(np.float64))
-    expected = dijkstra(graph, indices=1)
+    expected = dijkstra(graph, indices=[1])[0]
     ways = np.zeros(table.shape[0], np.int64)
     shortest_ways(problem.travel, 1, outward, ways)
     found = np.where(ways >= UNREACHABLE, np.inf, ways)

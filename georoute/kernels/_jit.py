@@ -29,8 +29,9 @@ def _fingerprint() -> str:
     The compiler's own cache looks at the file of a function only: it would keep a kernel whose
     callee in another file has changed, and stumble over classes that are gone.
     """
-    told = hashlib.sha256(f"{numba.__version__} {np.__version__} {sys.version}".encode())
-    for source in sorted(Path(__file__).parent.glob("*.py")):
+    here = Path(__file__).parent
+    told = hashlib.sha256(f"{numba.__version__} {np.__version__} {sys.version} {here}".encode())
+    for source in sorted(here.glob("*.py")):
         told.update(source.read_bytes())
     return told.hexdigest()[:16]
 

@@ -11,6 +11,7 @@ from georoute.domain.instants import later
 from georoute.domain.plan import DayTour, Leg, Stop
 from georoute.kernels.arrays import leg_mm, leg_ms
 from georoute.kernels.clock import clock_tour, latest_arrivals, time_tour, tour_cost
+from georoute.problem import MICRO
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -23,8 +24,6 @@ if TYPE_CHECKING:
     from georoute.problem import Packed, Problem, Solution
 
 __all__ = ["is_feasible", "order_cost", "solution_cost", "tours_of"]
-
-MICRO = 1_000_000
 
 
 def order_cost(problem: Problem, shift: int, order: NDArray[np.int64]) -> int:

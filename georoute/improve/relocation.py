@@ -24,6 +24,7 @@ from georoute.kernels.placement import (
 from georoute.kernels.random_stream import new_stream
 from georoute.kernels.rearrangement import MOST_TRIED, rearrange
 from georoute.kernels.relocation import close_day, relocate_one, swap_one
+from georoute.problem import MICRO
 from georoute.problem.board import make_board, solution_of
 
 if TYPE_CHECKING:
@@ -37,7 +38,6 @@ if TYPE_CHECKING:
 
 __all__ = ["relocate"]
 
-MICRO = 1_000_000
 WORK_PER_CALL = 20_000
 """Positions judged between two looks at the clock: some milliseconds."""
 WIDE_UP_TO = 600

@@ -13,7 +13,7 @@ from georoute.kernels.annealing import Book, anneal
 from georoute.kernels.random_stream import new_stream
 from georoute.kernels.slack_state import COUNT, FARE, LOSS, MONEY, STOP, rows_of, write_row
 from georoute.kernels.windowed_rows import Clockwork, price_by_clock
-from georoute.problem import Problem, Solution
+from georoute.problem import MICRO, Problem, Solution
 from georoute.problem.board import most_stops
 from georoute.timetable import solution_cost
 
@@ -26,7 +26,6 @@ if TYPE_CHECKING:
 
 __all__ = ["ImproveResult", "improve"]
 
-MICRO = 1_000_000
 HOT = 1.0
 COLD = 0.01
 """Temperatures at the start and at the end, as multiples of the mean leg."""

@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING
 
 from georoute.domain.plan import Exchange
 from georoute.kernels.arrays import leg_mm, leg_ms
+from georoute.problem import MICRO
 
 if TYPE_CHECKING:
     import numpy as np
@@ -20,7 +21,6 @@ if TYPE_CHECKING:
 
 __all__ = ["ExchangeLog"]
 
-MICRO = 1_000_000
 Order = tuple[int, ...]
 LegIndex = tuple[int, int]
 

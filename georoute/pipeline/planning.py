@@ -20,7 +20,7 @@ from georoute.pipeline.search import search
 from georoute.pipeline.warm_up import warm_up
 from georoute.problem import pack
 from georoute.problem.capacity import capacity
-from georoute.problem.reasons import cannot_fit, explain_unplaced, reason_text
+from georoute.problem.reasons import explain_unplaced, reason_text
 from georoute.timetable import tours_of
 
 if TYPE_CHECKING:
@@ -46,7 +46,6 @@ PLAN_NAMESPACE = uuid.UUID("6d1c7a52-4c0e-5a53-9d0b-0b5f5f0c7a11")
 class Prepared:
     """Everything that is known before the search: travel, arrays, and what the sums say.
 
-    ``impossible`` are the visits that fit no shift even on their own, with the arithmetic.
     ``findings`` are the warnings and notes that came up while measuring travel.
     """
 
@@ -54,7 +53,6 @@ class Prepared:
     register: Register
     costs: CostMatrix
     capacity: Capacity
-    impossible: tuple[Unplaced, ...]
     findings: tuple[Finding, ...]
 
 
@@ -178,7 +176,6 @@ def prepare(
         register=register,
         costs=costs,
         capacity=capacity(packed.problem),
-        impossible=_left_out(packed, cannot_fit(packed.problem, why_not=packed.why_not)),
         findings=findings,
     )
 

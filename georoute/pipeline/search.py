@@ -9,7 +9,7 @@ import numpy as np
 
 from georoute.improve import improve, relocate
 from georoute.pipeline.exchange_log import ExchangeLog
-from georoute.problem import Solution
+from georoute.problem import MICRO, Solution
 from georoute.sequence import sequence_tour
 from georoute.split import split
 from georoute.timetable import solution_cost
@@ -25,7 +25,6 @@ if TYPE_CHECKING:
 
 __all__ = ["Found", "search"]
 
-MICRO = 1_000_000
 TOGETHER_SHARE = 0.95
 """Share of a limit in seconds after which days are left as they are, and put in order."""
 

@@ -16,7 +16,10 @@ if TYPE_CHECKING:
 
     from georoute.kernels.arrays import Shifts, Travel, Visits
 
-__all__ = ["Problem", "Solution"]
+__all__ = ["MICRO", "Problem", "Solution"]
+
+MICRO = 1_000_000
+"""Micro-units of money in one unit of the currency."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)

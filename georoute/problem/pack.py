@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from georoute.kernels.arrays import MUST, UNREACHABLE, Shifts, Travel, Visits
-from georoute.problem.arrays import Problem
+from georoute.problem.arrays import MICRO, Problem
 from georoute.problem.eligibility import WhyNot, why_not
 from georoute.projection import local_plane
 
@@ -28,7 +28,6 @@ __all__ = ["Packed", "pack", "to_ticks"]
 
 MS_PER_S = 1_000
 MM_PER_M = 1_000
-MICRO = 1_000_000
 MS_PER_HOUR = 3_600_000
 MM_PER_KM = 1_000_000
 LOAD_TICKS = 1_000

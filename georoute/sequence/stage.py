@@ -30,7 +30,6 @@ if TYPE_CHECKING:
 
 __all__ = ["sequence", "sequence_tour"]
 
-MICRO = 1_000_000
 TRIED_WHOLE = 3
 """Visits up to which every order is tried."""
 

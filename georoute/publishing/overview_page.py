@@ -68,6 +68,7 @@ def _island(edition: Edition, view: OverviewView) -> dict[str, object]:
             "dash": row.look.dash,
             "mark": row.look.mark,
             "tag": words("tag_one" if count == 1 else "tag", date=row.date_short, count=count),
+            "date": row.date_short,
             "inspector": _short_name(row.inspector),
             "tag_stops": _outermost(stops),
             "bases": [numbers[tour.start_base_id], numbers[tour.end_base_id]],

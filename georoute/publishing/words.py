@@ -182,6 +182,7 @@ ENGLISH: dict[str, str] = {
     "map_letters": "N S E W",
     "map_shown": "Stop {number}, {name}, is shown on the map",
     "map_next_stop": "next stop",
+    "map_no_room": "No room here for {count} of the labels: zoom in.",
     "map_too_many": "Tags are shown for up to {count} tours: choose fewer in the table.",
     # reasons
     "reason_closed": "closed at every time it could be reached",

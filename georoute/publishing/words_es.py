@@ -173,6 +173,7 @@ SPANISH: dict[str, str] = {
     "map_letters": "N S E O",
     "map_shown": "La parada {number}, {name}, se ve en el mapa",
     "map_next_stop": "próxima parada",
+    "map_no_room": "Aquí no caben {count} de los rótulos: acerque el mapa.",
     "map_too_many": "Hay rótulos para hasta {count} recorridos: elija menos en la tabla.",
     # reasons
     "reason_closed": "cerrado siempre que se podría llegar",

@@ -50,6 +50,7 @@ function startThemes() {
     input.addEventListener("change", () => {
       document.documentElement.dataset.theme = input.value;
       remember("georoute-theme", input.value);
+      document.dispatchEvent(new Event("themechange"));
     });
   }
 }

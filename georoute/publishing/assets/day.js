@@ -123,21 +123,27 @@ function paintDay(sheet, map, places, labels, state) {
   }
   const marks = svg("g", {});
   const compact = map.getSize().x < 560 || map.getSize().y < 300;
-  sheet.labels.classList.toggle("compact", compact);
   const items = points.map((point, k) => {
     const number = k < tour.bases.length ? 0 : places[k].number;
     const now = number !== 0 && number === state.current;
-    labels[k].classList.toggle("current", now);
+    const element = labels[k];
+    element.classList.toggle("current", now);
     if (number === 0) marks.append(target(Math.round(point.x), Math.round(point.y)));
     else {
       if (now) marks.append(svg("circle", { cx: point.x, cy: point.y, r: 10, class: "dot-ring" }));
       marks.append(svg("circle", { cx: point.x, cy: point.y, r: 4.5, class: "dot" }));
     }
-    const element = labels[k];
-    const anchors = [[point.x, point.y]];
-    return { element, anchors, w: element.offsetWidth, h: element.offsetHeight };
+    return {
+      element,
+      anchors: [[point.x, point.y]],
+      levels: now ? 1 : 2,
+      first_level: compact && !now ? 1 : 0,
+      // bases, the stop in hand and late stops step aside last
+      weight: now || number === 0 ? 2 : Number(places[k].state === "late"),
+    };
   });
   const dots = points.map((point) => [point.x, point.y]);
-  const leaders = setLabels(sheet, items, { dots, segments, weights: { dot: 160, cord: 0.55 } });
+  const scene = { dots, segments, dots_show: true, cord_cost: 0.55 };
+  const leaders = setLabels(sheet, items, scene);
   sheet.drawing.append(cords, barbs, leaders, marks);
 }

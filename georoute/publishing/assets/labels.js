@@ -1,21 +1,11 @@
 // Where plates and tags go: near their dot, clear of each other, of dots, cords and the edge.
-const LABEL_RADII = [13, 26, 44, 68, 98, 136];
+// A label that finds no clear spot is made smaller; where that does not help it steps aside, its
+// dot stays. The order of trying is fixed, so the same view always gives the same picture.
+const LABEL_RADII = [13, 22, 32, 44, 60, 80, 104];
 const LABEL_ANGLES = Array.from({ length: 16 }, (_, k) => (k * Math.PI) / 8);
-
-// An item may hang at any of its anchors; a plate has one, the tag of a tour several.
-function labelSpots({ anchors, w, h }) {
-  const spots = [];
-  for (const [ax, ay] of anchors) {
-    for (const radius of LABEL_RADII) {
-      for (const angle of LABEL_ANGLES) {
-        const x = ax + Math.cos(angle) * (radius + w / 2) - w / 2;
-        const y = ay + Math.sin(angle) * (radius + h / 2) - h / 2;
-        spots.push({ ax, ay, x, y, w, h, radius });
-      }
-    }
-  }
-  return spots;
-}
+const FAULT = 1000; // more than all softer wishes together
+const CROSSING = 200;
+const MOST_CROSSINGS = 1; // leaders that cross more than one other are a thicket
 
 function overlap(a, b, gap) {
   const w = Math.min(a.x + a.w, b.x + b.w) - Math.max(a.x, b.x) + gap;
@@ -40,46 +30,144 @@ function inside(box, [x1, y1, x2, y2]) {
   return to > from ? (to - from) * Math.hypot(dx, dy) : 0;
 }
 
-// A leader runs from the anchor to the nearest point of the box.
-function leaderOf({ ax, ay, x, y, w, h }) {
-  return [ax, ay, Math.min(Math.max(ax, x), x + w), Math.min(Math.max(ay, y), y + h)];
+function crossing([ax, ay, bx, by], [cx, cy, dx, dy]) {
+  const turn = (px, py, qx, qy, x, y) => (qx - px) * (y - py) - (qy - py) * (x - px);
+  return turn(ax, ay, bx, by, cx, cy) * turn(ax, ay, bx, by, dx, dy) < 0
+    && turn(cx, cy, dx, dy, ax, ay) * turn(cx, cy, dx, dy, bx, by) < 0;
 }
 
-function spotCost(spot, others, scene) {
-  let cost = spot.radius * 0.9;
+// A leader runs from the anchor to the nearest point of the box; `reach` holds both.
+function spotAt(ax, ay, x, y, w, h) {
+  const ex = Math.min(Math.max(ax, x), x + w);
+  const ey = Math.min(Math.max(ay, y), y + h);
+  const left = Math.min(ax, x);
+  const top = Math.min(ay, y);
+  const reach = {
+    x: left, y: top, w: Math.max(ax, x + w) - left, h: Math.max(ay, y + h) - top,
+  };
+  return { x, y, w, h, leader: [ax, ay, ex, ey], reach, cost: 0, faults: 0 };
+}
+
+// What a spot costs by itself; its faults are counted apart.
+function judgeSpot(spot, scene) {
   const { view } = scene;
   const out = Math.max(0, view.x - spot.x) + Math.max(0, spot.x + spot.w - view.x - view.w)
     + Math.max(0, view.y - spot.y) + Math.max(0, spot.y + spot.h - view.y - view.h);
-  if (out > 0) cost += 400 + 40 * out;
-  for (const box of scene.blocked) if (overlap(spot, box, 4)) cost += 300;
-  for (const dot of scene.dots) {
-    if (overlap(spot, { x: dot[0] - 6, y: dot[1] - 6, w: 12, h: 12 }, 2)) cost += scene.weights.dot;
+  if (out > 0) {
+    spot.faults += 1;
+    spot.cost += 40 * out;
   }
-  const leader = leaderOf(spot);
-  for (const other of others) {
-    if (!other.spot) continue;
-    const shared = overlap(spot, other.spot, 5);
-    if (shared) cost += 500 + shared;
-    if (inside(other.spot, leader)) cost += 140;
-    if (inside(spot, leaderOf(other.spot))) cost += 140;
+  for (const box of scene.blocked) if (overlap(spot, box, 3)) spot.faults += 1;
+  for (const [x, y] of scene.dots) {
+    const near = { x: x - 6, y: y - 6, w: 12, h: 12 };
+    const own = x === spot.leader[0] && y === spot.leader[1];
+    if (overlap(spot, near, 1)) {
+      if (scene.dots_show) spot.faults += 1;
+      else spot.cost += 30;
+    } else if (!own && inside(near, spot.leader)) spot.cost += 60;
   }
-  for (const segment of scene.segments) cost += scene.weights.cord * inside(spot, segment);
-  return cost;
+  for (const segment of scene.segments) spot.cost += scene.cord_cost * inside(spot, segment);
+  spot.cost += FAULT * spot.faults;
 }
 
-// Gives every item a `spot`; three rounds are enough for the plates of a day to settle.
-function placeLabels(items, scene) {
-  for (let round = 0; round < 3; round += 1) {
-    for (const item of items) {
-      const others = items.filter((other) => other !== item);
-      let best = Infinity;
-      for (const spot of labelSpots(item)) {
-        const cost = spotCost(spot, others, scene);
-        if (cost < best) {
-          best = cost;
-          item.spot = spot;
-        }
+// An item may hang at any of its anchors; a plate has one, the tag of a tour several.
+function spotsOf(item, scene) {
+  const [w, h] = item.sizes[item.level];
+  const spots = [];
+  for (const [ax, ay] of item.anchors) {
+    for (const radius of LABEL_RADII) {
+      for (const angle of LABEL_ANGLES) {
+        const x = ax + Math.cos(angle) * (radius + w / 2) - w / 2;
+        const y = ay + Math.sin(angle) * (radius + h / 2) - h / 2;
+        const spot = spotAt(ax, ay, x, y, w, h);
+        spot.cost = radius * 0.9;
+        judgeSpot(spot, scene);
+        spots.push(spot);
       }
     }
+  }
+  return spots.sort((a, b) => a.cost - b.cost);
+}
+
+// How much two labels are in each other's way. Plate on plate and leader on plate are faults; a
+// leader across a leader can still be read.
+function quarrel(a, b) {
+  if (!overlap(a.reach, b.reach, 8)) return 0;
+  const faults = (overlap(a, b, 4) ? 2 : 0) + (inside(b, a.leader) ? 1 : 0)
+    + (inside(a, b.leader) ? 1 : 0);
+  return FAULT * faults + (crossing(a.leader, b.leader) ? CROSSING : 0);
+}
+
+function settle(items, scene) {
+  for (const item of items) item.spots ||= spotsOf(item, scene);
+  for (let round = 0, moved = true; moved && round < 6; round += 1) {
+    moved = false;
+    for (const item of items) {
+      let best = Infinity;
+      let chosen = item.spot;
+      for (const spot of item.spots) {
+        if (spot.cost >= best) break; // sorted: no later spot is better
+        let cost = spot.cost;
+        for (const other of items) {
+          if (other !== item && other.spot) cost += quarrel(spot, other.spot);
+          if (cost >= best) break;
+        }
+        if (cost < best) {
+          best = cost;
+          chosen = spot;
+        }
+      }
+      moved ||= chosen !== item.spot;
+      item.spot = chosen;
+    }
+  }
+}
+
+// The faults of a spot among the others; a leader through a thicket is one as well.
+function faultsOf(spot, item, items) {
+  let { faults } = spot;
+  let crossings = 0;
+  for (const other of items) {
+    if (other === item || !other.spot) continue;
+    const cost = quarrel(spot, other.spot);
+    faults += Math.floor(cost / FAULT);
+    crossings += (cost % FAULT) / CROSSING;
+  }
+  return faults + Math.max(0, crossings - MOST_CROSSINGS);
+}
+
+// Gives every item a `spot`, or none where there is no room for it.
+function placeLabels(items, scene) {
+  for (const item of items) {
+    item.level = item.first_level;
+    item.spot = item.spots = null;
+  }
+  settle(items, scene);
+  for (;;) {
+    const placed = items.filter((item) => item.spot);
+    const bad = placed.filter((item) => faultsOf(item.spot, item, items) > 0);
+    if (bad.length === 0) break;
+    const large = bad.filter((item) => item.level < item.sizes.length - 1);
+    for (const item of large) {
+      item.level += 1;
+      item.spot = item.spots = null;
+    }
+    if (large.length > 0) settle(items, scene);
+    else {
+      // the one most in the way steps aside; of equals the last, and the weighty stay longest
+      const last = bad.reduce((a, b) => {
+        const by = a.weight - b.weight
+          || faultsOf(b.spot, b, items) - faultsOf(a.spot, a, items);
+        return by < 0 ? a : b;
+      });
+      last.spot = null;
+    }
+  }
+  // those that stepped aside come back where a clear spot is left
+  for (const item of items) {
+    if (item.spot) continue;
+    item.spot = item.spots.find((spot) => spot.faults === 0 && items.every(
+      (other) => !other.spot || quarrel(spot, other.spot) === 0,
+    )) || null;
   }
 }

@@ -20,7 +20,7 @@ function surveyMap(id, options) {
   return map;
 }
 
-const OVER_THE_MAP = ".map-tools, .north, .map-note, .leaflet-control-scale";
+const OVER_THE_MAP = ".map-tools, .north, .map-note, .map-fold, .leaflet-control-scale";
 
 function gridStep(span) {
   const steps = [0.001, 0.002, 0.005, 0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1, 2, 5, 10, 20];
@@ -80,10 +80,13 @@ const SurveySheet = L.Layer.extend({
     this._watch = new ResizeObserver(() => map.invalidateSize({ pan: false }));
     this._watch.observe(map.getContainer());
     map.on("moveend viewreset resize", this.refresh, this);
+    this._anew = () => this.refresh();
+    document.addEventListener("themechange", this._anew); // other letters, other sizes
   },
   onRemove(map) {
     this._watch.disconnect();
     map.off("moveend viewreset resize", this.refresh, this);
+    document.removeEventListener("themechange", this._anew);
     this._svg.remove();
     this.labels.remove();
   },
@@ -100,6 +103,7 @@ const SurveySheet = L.Layer.extend({
     const blocked = [];
     for (const over of document.querySelectorAll(OVER_THE_MAP)) {
       const box = over.getBoundingClientRect();
+      if (box.width === 0) continue;
       blocked.push({
         x: corner.x + box.x - frame.x, y: corner.y + box.y - frame.y, w: box.width, h: box.height,
       });
@@ -146,24 +150,53 @@ function target(x, y) {
   return group;
 }
 
-// Labels of dots in view find their places; those of dots out of view step aside.
-function setLabels(sheet, items, given) {
-  const scene = { ...sheet.view(), ...given };
+// A label is measured at each of its sizes, the largest first; its style knows the rest.
+const SIZES = ["", "small", "least"];
+
+function resize(element, level) {
+  for (let k = 1; k < SIZES.length; k += 1) element.classList.toggle(SIZES[k], k <= level);
+}
+
+function measure(items) {
+  const most = Math.max(0, ...items.map((item) => item.levels));
+  for (const item of items) item.sizes = [];
+  for (let level = 0; level < most; level += 1) {
+    const now = items.filter((item) => level < item.levels);
+    for (const { element } of now) resize(element, level);
+    for (const { element, sizes } of now) sizes.push([element.offsetWidth, element.offsetHeight]);
+  }
+}
+
+// Labels of dots in view find their places; those of dots out of view or without room step aside,
+// and a note on the map says how many found no room. Returns the leaders.
+function setLabels(sheet, items, given, news = "") {
+  const note = document.getElementById("map-fold");
+  note.textContent = news;
+  let scene = { ...sheet.view(), ...given };
   const { x, y, w, h } = scene.view;
-  const near = items.filter((item) => {
+  for (const item of items) {
     item.anchors = item.anchors.filter(
       ([ax, ay]) => ax >= x && ax <= x + w && ay >= y - 12 && ay <= y + h,
     );
-    item.element.classList.toggle("away", item.anchors.length === 0);
-    return item.anchors.length > 0;
-  });
+  }
+  const near = items.filter((item) => item.anchors.length > 0);
+  measure(near);
   placeLabels(near, scene);
+  const without = () => near.filter((item) => !item.spot).length;
+  if (without() && !news) {
+    // the note takes room as well
+    note.textContent = fill(words.map_no_room, { count: without() });
+    scene = { ...sheet.view(), ...given };
+    placeLabels(near, scene);
+    note.textContent = fill(words.map_no_room, { count: without() });
+  }
   const leaders = svg("g", {});
-  for (const item of near) {
-    const end = leaderOf(item.spot);
-    leaders.append(line(end, "leader-halo"), line(end, "leader"));
-    const place = L.point(Math.round(item.spot.x), Math.round(item.spot.y));
-    L.DomUtil.setPosition(item.element, place);
+  for (const { element, spot, level } of items) {
+    element.classList.toggle("away", !spot);
+    if (!spot) continue;
+    resize(element, level);
+    leaders.append(line(spot.leader, "leader-halo"), line(spot.leader, "leader"));
+    L.DomUtil.setPosition(element, L.point(Math.round(spot.x), Math.round(spot.y)));
   }
   return leaders;
 }

@@ -25,8 +25,8 @@ function makeTag(tour) {
   glyph.append(svg("path", { d: MARKS[tour.mark](7, 7, 5), class: "mark" }));
   // where there is little room, the initials stand for the name: hue alone never does
   const initials = tour.inspector.split(/[ .]+/).map((part) => part.charAt(0)).join("");
-  tag.append(glyph, html("span", "tag-text", tour.tag), html("span", "tag-who", tour.inspector));
-  tag.append(html("span", "tag-initials", initials));
+  tag.append(glyph, html("span", "tag-text", tour.tag), html("span", "tag-date", tour.date));
+  tag.append(html("span", "tag-who", tour.inspector), html("span", "tag-initials", initials));
   return tag;
 }
 
@@ -150,27 +150,26 @@ function paintOverview(sheet, map, places, { tags, baseTags, state }) {
     strands.append(group);
   }
   const { x: wide, y: high } = map.getSize();
-  sheet.labels.classList.toggle("compact", wide < 440);
   const items = [];
-  const label = (element, spots) => {
+  const label = (element, spots, levels, weight) => {
     const anchors = spots.map(({ x, y }) => [x, y]);
-    items.push({ element, anchors, w: element.offsetWidth, h: element.offsetHeight });
+    items.push({ element, anchors, levels, first_level: 0, weight });
   };
   baseTags.forEach((plate, k) => {
     const at = points[k];
     dots.push([at.x, at.y]);
     marks.append(target(Math.round(at.x), Math.round(at.y)));
-    label(plate, [at]);
+    label(plate, [at], 1, 1);
   });
   const most = Math.min(MOST_TAGS, Math.floor((wide * high) / ROOM_OF_A_TAG));
   const few = shown.length <= most;
-  document.getElementById("map-news").textContent = few
-    ? "" : fill(words.map_too_many, { count: most });
+  const news = few ? "" : fill(words.map_too_many, { count: most });
   tags.forEach((tag, k) => {
     tag.hidden = !state.visible[k] || !(state.chosen < 0 ? few : state.chosen === k);
     tag.classList.toggle("chosen", state.chosen === k);
-    if (!tag.hidden) label(tag, tours[k].tag_places.map((place) => points[place]));
+    if (!tag.hidden) label(tag, tours[k].tag_places.map((place) => points[place]), 3, 0);
   });
-  const leaders = setLabels(sheet, items, { dots, segments, weights: { dot: 30, cord: 0.2 } });
+  const scene = { dots, segments, dots_show: false, cord_cost: 0.2 };
+  const leaders = setLabels(sheet, items, scene, news);
   sheet.drawing.append(strands, leaders, marks);
 }

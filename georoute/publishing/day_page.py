@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 from georoute.publishing.day_view import day_view
 from georoute.publishing.frame import DataLayer, Page, SurveyMap
+from georoute.publishing.island import differences
 from georoute.publishing.looks import looks_of
 from georoute.publishing.names import OVERVIEW_NAME, page_name
 
@@ -24,6 +25,11 @@ def view_of(edition: Edition, tour: DayTour) -> DayView:
     """Return what the pages of a tour say."""
     look = looks_of(edition.plan.programme.inspectors, tour.inspector_id, tour.day)
     return day_view(edition.index, tour, look, edition.figures)
+
+
+def _steps(edition: Edition, lat_deg: float, lon_deg: float) -> tuple[int, int]:
+    """Return a place in whole steps of 1e-6 degrees, a tenth of a metre."""
+    return round(lat_deg * 1e6), round(edition.lon(lon_deg) * 1e6)
 
 
 def _island(edition: Edition, view: DayView) -> dict[str, object]:
@@ -51,17 +57,13 @@ def _island(edition: Edition, view: DayView) -> dict[str, object]:
                 }
                 for base, text in zip(bases, times, strict=True)
             ],
-            "stops": [
-                {
-                    "name": stop.name,
-                    **({"state": stop.state, "note": stop.note} if stop.note else {}),
-                    "arrive": stop.arrive,
-                    "leave_ms": stop.leave_ms,
-                    "lat": round(stop.lat_deg, 6),
-                    "lon": edition.lon(stop.lon_deg),
-                }
-                for stop in view.stops
-            ],
+            # names, times and states stand in the run list; the map reads them there
+            "places": differences(
+                [_steps(edition, stop.lat_deg, stop.lon_deg) for stop in view.stops]
+            ),
+            "leave_s": differences([(stop.leave_ms // 1000,) for stop in view.stops]),
+            "arrive": [stop.arrive for stop in view.stops],
+            "notes": {stop.number: stop.note for stop in view.stops if stop.note},
         },
     }
 

@@ -41,6 +41,12 @@ __all__ = [
 
 _LEAFLET_FOLDER = "static/js_lib_leaflet"
 
+_UNUSED = re.compile(
+    r"popup|tooltip|layers|leaflet-bar|marker-icon|marker-shadow|div-icon|attribution|control-zoom|vml"
+    r"|oldie|default-icon|zoom-box|leaflet-retina"
+)
+"""Parts of Leaflet that no map of ours has: controls and marks that we draw ourselves."""
+
 
 @functools.cache
 def environment() -> jinja2.Environment:
@@ -115,13 +121,19 @@ def leaflet_js() -> str:
 
 @functools.cache
 def leaflet_css() -> str:
-    """Return Leaflet's style sheet without addresses.
+    """Return Leaflet's style sheet without addresses, and without what our maps do not have.
 
     Its images belong to controls and markers that our maps draw themselves.
     """
     style = _plain_lines(_leaflet("leaflet.css"))
     style = re.sub(r"\s*behavior:\s*url\([^)]*\);", "", style)  # for a browser long gone
-    return slim_style(re.sub(r"url\(images/[\w-]+\.png\)", "none", style))
+    style = slim_style(re.sub(r"url\(images/[\w-]+\.png\)", "none", style))
+
+    def used(rule: re.Match[str]) -> str:
+        kept = [part for part in rule["selectors"].split(",") if not _UNUSED.search(part)]
+        return f"{','.join(kept)}{{{rule['body']}}}" if kept else ""
+
+    return re.sub(r"(?P<selectors>[^{}@]+)\{(?P<body>[^{}]*)\}", used, style)
 
 
 def _hash_source(text: str) -> str:

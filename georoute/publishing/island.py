@@ -6,9 +6,9 @@ import json
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Iterable, Mapping
 
-__all__ = ["island_json"]
+__all__ = ["differences", "island_json"]
 
 _ESCAPES = {
     ord("<"): "\\u003c",  # no </script> and no <!-- can end or reopen the block
@@ -29,3 +29,13 @@ def island_json(data: Mapping[str, object]) -> str:
     """
     text = json.dumps(data, ensure_ascii=False, separators=(",", ":"), allow_nan=False)
     return text.translate(_ESCAPES)
+
+
+def differences(rows: Iterable[tuple[int, ...]]) -> list[int]:
+    """Return rows of whole numbers as one flat list: what each adds to the row before it."""
+    flat: list[int] = []
+    before: tuple[int, ...] = ()
+    for row in rows:
+        flat += [now - then for now, then in zip(row, before or (0,) * len(row), strict=True)]
+        before = row
+    return flat

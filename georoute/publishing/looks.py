@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, NamedTuple
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -11,7 +11,7 @@ if TYPE_CHECKING:
 
     from georoute.domain.people import Inspector
 
-__all__ = ["HUES", "TourLook", "looks_of"]
+__all__ = ["HUES", "WEEKDAY_LOOKS", "TourLook", "WeekdayLook", "looks_of"]
 
 HUES = ("#0072B2", "#009E73", "#CC79A7", "#E69F00", "#56B4E9", "#1E1E1E")
 """Okabe and Ito's set ("Color Universal Design", 2008) less yellow (faint on paper) and
@@ -21,6 +21,17 @@ _DASHES = ("18 4", "9 4", "2.5 4", "14 4 2.5 4", "9 3 2.5 3 2.5 3", "5 4 14 4", 
 """One pattern per weekday, Monday first. All are broken: straight legs are never a full line."""
 
 _MARKS = ("circle", "square", "triangle", "diamond", "hexagon", "cross", "ring")
+
+
+class WeekdayLook(NamedTuple):
+    """What tells the weekday of a tour."""
+
+    dash: str
+    mark: str
+
+
+WEEKDAY_LOOKS = tuple(map(WeekdayLook, _DASHES, _MARKS))
+"""Monday first."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -44,6 +55,6 @@ def looks_of(inspectors: Sequence[Inspector], inspector_id: str, day: date) -> T
     return TourLook(
         hue=place % len(HUES),
         outlined=place >= len(HUES),
-        dash=_DASHES[day.weekday()],
-        mark=_MARKS[day.weekday()],
+        dash=WEEKDAY_LOOKS[day.weekday()].dash,
+        mark=WEEKDAY_LOOKS[day.weekday()].mark,
     )

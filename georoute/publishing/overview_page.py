@@ -5,6 +5,8 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from georoute.publishing.frame import DataLayer, Page, SurveyMap
+from georoute.publishing.island import differences
+from georoute.publishing.looks import WEEKDAY_LOOKS
 from georoute.publishing.names import OFFICE_NAME
 from georoute.publishing.overview_view import overview_view
 
@@ -28,16 +30,6 @@ def _steps(edition: Edition, place: Base | Site) -> tuple[int, int]:
     return round(place.lat_deg / _STEP_DEG), round(edition.lon(place.lon_deg) / _STEP_DEG)
 
 
-def _differences(places: list[tuple[int, int]]) -> list[int]:
-    """Return places as one list: each pair is what was added to the pair before it."""
-    flat = []
-    lat, lon = 0, 0
-    for next_lat, next_lon in places:
-        flat += [next_lat - lat, next_lon - lon]
-        lat, lon = next_lat, next_lon
-    return flat
-
-
 def _outermost(stops: list[tuple[int, int]]) -> list[int]:
     """Return the stops (from 0) where the tag of a tour may hang: the farthest one each way."""
     numbers = range(len(stops))
@@ -56,30 +48,31 @@ def _short_name(name: str) -> str:
 def _island(edition: Edition, view: OverviewView) -> dict[str, object]:
     """Return the data of the map: bases, and each tour's bases by number and stops by place."""
     words, index = edition.figures.words, edition.index
+    people = list(index.inspectors)
     numbers = {base_id: number for number, base_id in enumerate(index.bases)}
 
     def strand(row: TourRow) -> dict[str, object]:
         tour = row.tour
         stops = [_steps(edition, index.sites[stop.site_id]) for stop in tour.stops]
-        count = len(stops)
         return {
             "hue": row.look.hue,
             **({"outlined": True} if row.look.outlined else {}),
-            "dash": row.look.dash,
-            "mark": row.look.mark,
-            "tag": words("tag_one" if count == 1 else "tag", date=row.date_short, count=count),
+            "weekday": tour.day.weekday(),
             "date": row.date_short,
-            "inspector": _short_name(row.inspector),
-            "tag_stops": _outermost(stops),
+            "who": people.index(tour.inspector_id),
+            "tags": _outermost(stops),
             "bases": [numbers[tour.start_base_id], numbers[tour.end_base_id]],
-            "stops": _differences(stops),
+            "stops": differences(stops),
         }
 
     return {
         "words": words.for_scripts(),
         "side": edition.side(),
         "bases": [base.name for base in index.bases.values()],
-        "base_places": _differences([_steps(edition, base) for base in index.bases.values()]),
+        "base_places": differences([_steps(edition, base) for base in index.bases.values()]),
+        # by weekday, from Monday
+        "looks": [[look.dash, look.mark] for look in WEEKDAY_LOOKS],
+        "people": [_short_name(person.name) for person in index.inspectors.values()],
         "tours": [strand(row) for row in view.rows],
     }
 

@@ -166,8 +166,8 @@ ENGLISH: dict[str, str] = {
     "all_tours": "All tours",
     "show_tour": "on the map",
     "open_sheet": "sheet",
-    "tag": "{date}, {count} stops",
-    "tag_one": "{date}, 1 stop",
+    "map_tag": "{date}, {count} stops",
+    "map_tag_one": "{date}, 1 stop",
     "no_tours": "No tour: nothing is placed.",
     # map controls and states
     "map_name": "Map of the tour",

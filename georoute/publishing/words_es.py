@@ -157,8 +157,8 @@ SPANISH: dict[str, str] = {
     "all_tours": "Todos los recorridos",
     "show_tour": "en el mapa",
     "open_sheet": "hoja",
-    "tag": "{date}, {count} paradas",
-    "tag_one": "{date}, 1 parada",
+    "map_tag": "{date}, {count} paradas",
+    "map_tag_one": "{date}, 1 parada",
     "no_tours": "Ningún recorrido: no hay nada colocado.",
     # map controls and states
     "map_name": "Mapa del recorrido",

@@ -51,7 +51,9 @@ def test_plates_of_a_dense_day_are_clear_and_those_without_room_are_counted(
     counts = measure_labels(page)
     assert faults(counts) == {}
     left = counts["all"] - counts["labels"]
-    assert page.locator("#map-fold").inner_text() == f"No room here for {left} of the labels: zoom in."
+    assert (
+        page.locator("#map-fold").inner_text() == f"No room here for {left} of the labels: zoom in."
+    )
     # a leader crosses no more than one other
     assert counts["leader_on_leader"] <= counts["labels"] // 2
     assert counts["labels"] >= 20

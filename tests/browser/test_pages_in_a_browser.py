@@ -120,7 +120,7 @@ def test_keyboard_goes_from_row_to_plate_and_back(
     assert page.evaluate("document.activeElement.closest('li').id") == "stop-4"
 
 
-@pytest.mark.parametrize("where", [".labels .plate .plate-number", ".run .row-open .plate-number"])
+@pytest.mark.parametrize("where", [".labels .plate .plate-number", ".run .row-open .plate"])
 def test_focus_order_is_the_order_of_stops(
     open_page: Open, one_day: tuple[Path, ...], where: str
 ) -> None:

@@ -21,6 +21,16 @@ function svg(tag, attributes, text) {
   return element;
 }
 
+// Rows of whole numbers that came as one flat list: what each adds to the row before it.
+function summed(flat, width) {
+  const rows = [];
+  for (let k = 0; k < flat.length; k += width) {
+    const before = rows[rows.length - 1] || [];
+    rows.push(flat.slice(k, k + width).map((value, j) => value + (before[j] || 0)));
+  }
+  return rows;
+}
+
 function isPhone() {
   return window.matchMedia("(max-width: 899px), (max-height: 559px)").matches;
 }

@@ -18,8 +18,21 @@ function makeBasePlate(base) {
 // Legs run from the first base through the stops to the last base.
 function numbered(tour) {
   const bases = tour.bases.length;
+  const leave = summed(tour.leave_s, 1);
+  tour.stops = summed(tour.places, 2).map(([lat, lon], k) => {
+    const row = document.getElementById(`stop-${k + 1}`);
+    return {
+      number: k + 1,
+      lat: lat / 1e6,
+      lon: lon / 1e6,
+      name: row.querySelector(".row-name").textContent,
+      state: ["late", "wait"].find((state) => row.classList.contains(state)),
+      arrive: tour.arrive[k],
+      note: tour.notes[k + 1],
+      leave_ms: leave[k][0] * 1000,
+    };
+  });
   const count = tour.stops.length;
-  tour.stops.forEach((stop, k) => { stop.number = k + 1; });
   const way = [0, ...tour.stops.map((stop, k) => bases + k), bases - 1];
   tour.legs = way.slice(1).map((to, k) => ({ from: way[k], to, home: k === count }));
   return tour;
@@ -79,6 +92,8 @@ function drawDay(map) {
       }
     });
     const row = document.getElementById(`stop-${stop.number}`);
+    row.dataset.stop = stop.number;
+    row.querySelector("button").setAttribute("aria-describedby", "go");
     row.addEventListener("click", (event) => {
       if (event.target.closest("a") || !window.getSelection().isCollapsed) return;
       const byKey = event.target.closest("button") && event.detail === 0;

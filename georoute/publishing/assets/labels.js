@@ -13,19 +13,25 @@ function overlap(a, b, gap) {
   return w > 0 && h > 0 ? w * h : 0;
 }
 
-// Length of a segment inside a box (Liang and Barsky, 1984).
-function inside(box, [x1, y1, x2, y2]) {
+// Length of a segment inside a box, clipped to its sides (Liang and Barsky, 1984).
+function inside({ x, y, w, h }, [x1, y1, x2, y2]) {
+  if (Math.max(x1, x2) < x || Math.min(x1, x2) > x + w) return 0;
+  if (Math.max(y1, y2) < y || Math.min(y1, y2) > y + h) return 0;
   const dx = x2 - x1;
   const dy = y2 - y1;
   let from = 0;
   let to = 1;
-  for (const [p, q] of [
-    [-dx, x1 - box.x], [dx, box.x + box.w - x1], [-dy, y1 - box.y], [dy, box.y + box.h - y1],
-  ]) {
-    if (p === 0) {
-      if (q < 0) return 0;
-    } else if (p < 0) from = Math.max(from, q / p);
-    else to = Math.min(to, q / p);
+  if (dx !== 0) {
+    const a = (x - x1) / dx;
+    const b = (x + w - x1) / dx;
+    from = Math.max(from, Math.min(a, b));
+    to = Math.min(to, Math.max(a, b));
+  }
+  if (dy !== 0) {
+    const a = (y - y1) / dy;
+    const b = (y + h - y1) / dy;
+    from = Math.max(from, Math.min(a, b));
+    to = Math.min(to, Math.max(a, b));
   }
   return to > from ? (to - from) * Math.hypot(dx, dy) : 0;
 }
@@ -58,7 +64,10 @@ function judgeSpot(spot, scene) {
     spot.cost += 40 * out;
   }
   for (const box of scene.blocked) if (overlap(spot, box, 3)) spot.faults += 1;
+  const { reach } = spot;
   for (const [x, y] of scene.dots) {
+    if (x < reach.x - 8 || x > reach.x + reach.w + 8) continue;
+    if (y < reach.y - 8 || y > reach.y + reach.h + 8) continue;
     const near = { x: x - 6, y: y - 6, w: 12, h: 12 };
     const own = x === spot.leader[0] && y === spot.leader[1];
     if (overlap(spot, near, 1)) {

@@ -187,7 +187,8 @@ function setLabels(sheet, items, given, news = "") {
     // the note takes room as well
     note.textContent = fill(words.map_no_room, { count: without() });
     scene = { ...sheet.view(), ...given };
-    placeLabels(near, scene);
+    const hit = ({ spot }) => spot && scene.blocked.some((box) => overlap(spot, box, 0));
+    if (near.some(hit)) placeLabels(near, scene);
     note.textContent = fill(words.map_no_room, { count: without() });
   }
   const leaders = svg("g", {});

@@ -24,23 +24,17 @@ function makeTag(tour) {
   const glyph = svg("svg", { width: 14, height: 14, "aria-hidden": "true", class: "glyph" });
   glyph.append(svg("path", { d: MARKS[tour.mark](7, 7, 5), class: "mark" }));
   // where there is little room, the initials stand for the name: hue alone never does
-  const initials = tour.inspector.split(/[ .]+/).map((part) => part.charAt(0)).join("");
-  tag.append(glyph, html("span", "tag-text", tour.tag), html("span", "tag-date", tour.date));
-  tag.append(html("span", "tag-who", tour.inspector), html("span", "tag-initials", initials));
+  const who = data.people[tour.who];
+  const count = tour.way.length - 2;
+  const text = fill(count === 1 ? words.map_tag_one : words.map_tag, { date: tour.date, count });
+  const initials = who.split(/[ .]+/).map((part) => part.charAt(0)).join("");
+  tag.append(glyph, html("span", "tag-text", text), html("span", "tag-date", tour.date));
+  tag.append(html("span", "tag-who", who), html("span", "tag-initials", initials));
   return tag;
 }
 
-// Places come as one list of differences, in steps of 1e-5 degrees.
 function placesOf(differences) {
-  const places = [];
-  let lat = 0;
-  let lon = 0;
-  for (let k = 0; k < differences.length; k += 2) {
-    lat += differences[k];
-    lon += differences[k + 1];
-    places.push([lat / 1e5, lon / 1e5]);
-  }
-  return places;
+  return summed(differences, 2).map(([lat, lon]) => [lat / 1e5, lon / 1e5]);
 }
 
 // All places on the map, bases first; each tour gets its way as numbers of places.
@@ -53,8 +47,9 @@ function numberedPlaces({ tours, base_places: bases }) {
       if (!known.has(key)) known.set(key, places.push(place) - 1);
       return known.get(key);
     });
+    [tour.dash, tour.mark] = data.looks[tour.weekday];
     tour.way = [tour.bases[0], ...stops, tour.bases[1]];
-    tour.tag_places = tour.tag_stops.map((stop) => stops[stop]);
+    tour.tag_places = tour.tags.map((stop) => stops[stop]);
   }
   return places;
 }
@@ -116,6 +111,12 @@ function drawOverview(map) {
     });
   });
   mapButtons({ in: () => map.zoomIn(), out: () => map.zoomOut(), fit });
+  // on a phone the hours stand at every bar
+  for (const bar of document.querySelectorAll(".day-bar .bar")) {
+    const hours = svg("svg", { class: "own-hours", "aria-hidden": "true" });
+    hours.append(svg("use", { href: "#bar-hours" }));
+    bar.after(hours);
+  }
 }
 
 function paintOverview(sheet, map, places, { tags, baseTags, state }) {

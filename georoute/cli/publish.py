@@ -15,6 +15,10 @@ __all__ = ["publish"]
 def publish(
     plan: Annotated[Path, typer.Argument(help="A plan file.")],
     folder: Annotated[Path, typer.Argument(help="Folder for the pages.")] = Path("maps"),
+    pdf: Annotated[
+        bool,
+        typer.Option("--pdf", help="Also write each run sheet as PDF; needs the extra 'pdf'."),
+    ] = False,
 ) -> None:
     """Write the pages of a plan.
 
@@ -31,6 +35,6 @@ def publish(
     if breaches:
         msg = f"{plan} fails its check in {len(breaches)} place(s); no page was written."
         raise AuditError(msg, findings=breaches)
-    pages = write_pages(finished, folder)
+    pages = write_pages(finished, folder, pdf=pdf)
     stderr().print(f"{len(pages)} pages in {folder}: open {folder / 'index.html'}")
     print_caution()

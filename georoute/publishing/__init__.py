@@ -14,7 +14,12 @@ __all__ = ["publish"]
 
 
 def publish(
-    plan: Plan, folder: Path | str, *, issued: datetime | None = None, language: str = "en"
+    plan: Plan,
+    folder: Path | str,
+    *,
+    issued: datetime | None = None,
+    language: str = "en",
+    pdf: bool = False,
 ) -> tuple[Path, ...]:
     """Write the pages of a plan: overview, office page, and a day page and run sheet per tour.
 
@@ -33,6 +38,8 @@ def publish(
         and a plan that has none is shown as not issued.
     language
         ``en`` or ``es``.
+    pdf
+        Whether to write each run sheet as PDF too, beside its page; needs the extra ``pdf``.
 
     Returns
     -------
@@ -42,12 +49,15 @@ def publish(
     Raises
     ------
     OutputError
-        A page could not be written, or a file that is not ours is in its place.
+        A page could not be written, a file that is not ours is in its place, or a PDF is wanted
+        and the extra ``pdf`` is not installed.
     ValueError
         There is no catalogue for the language.
     """
     # folium and its templates are slow to import; nobody pays for them before publishing
-    from georoute.publishing.pages import pages_of, write_pages  # noqa: PLC0415
+    from georoute.publishing.pages import pages_of, with_sheets_as_pdf, write_pages  # noqa: PLC0415
 
     pages = pages_of(plan, issued=issued, language=language)
+    if pdf:
+        pages = with_sheets_as_pdf(pages, plan_id=plan.plan_id)
     return write_pages(pages, Path(folder), plan_id=plan.plan_id)

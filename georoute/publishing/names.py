@@ -15,7 +15,10 @@ __all__ = ["OFFICE_NAME", "OVERVIEW_NAME", "PAGE_PATTERN", "page_name", "slug", 
 OVERVIEW_NAME = "index.html"
 OFFICE_NAME = "office.html"
 
-PAGE_PATTERN = re.compile(r"(?:index|office|(?:day|sheet)_\d{4}-\d{2}-\d{2}_[a-z0-9-]+)\.html")
+PAGE_PATTERN = re.compile(
+    r"(?:index|office|(?:day|sheet)_\d{4}-\d{2}-\d{2}_[a-z0-9-]+)\.html"
+    r"|sheet_\d{4}-\d{2}-\d{2}_[a-z0-9-]+\.pdf"
+)
 """What the names of our pages look like; nothing else in a folder is ever touched."""
 
 _LONGEST_SLUG = 40

@@ -8,6 +8,7 @@ from markupsafe import Markup
 
 from georoute.publishing.day_page import view_of
 from georoute.publishing.frame import environment, own, policy
+from georoute.publishing.looks import HUES
 from georoute.publishing.names import OVERVIEW_NAME, page_name
 from georoute.publishing.sketch import HEIGHT, PLATE_HEIGHT, WIDTH, sketch_of
 
@@ -31,6 +32,7 @@ def run_sheet(edition: Edition, tour: DayTour) -> str:
             title=words("day_title", date=view.date_long, inspector=view.inspector),
             day=view,
             sketch=sketch_of(view, words, side=edition.side()),
+            hue=HUES[view.look.hue],
             width=WIDTH,
             height=HEIGHT,
             plate_height=PLATE_HEIGHT,

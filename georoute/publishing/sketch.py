@@ -69,6 +69,21 @@ class Sketch:
     scale_width: float
     scale_text: str
 
+    @property
+    def ways(self) -> tuple[tuple[bool, str], ...]:
+        """The legs on the way and the leg home, each kind as one path."""
+        kinds = []
+        for home in (False, True):
+            lines = [f"M{a} {b}L{c} {d}" for a, b, c, d, last in self.legs if last is home]
+            if lines:
+                kinds.append((home, "".join(lines)))
+        return tuple(kinds)
+
+    @property
+    def leaders(self) -> str:
+        """The leaders of all plates as one path."""
+        return "".join(f"M{a} {b}L{c} {d}" for a, b, c, d in (p.leader for p in self.plates))
+
 
 def _bases(view: DayView) -> list[Base]:
     same = view.start_base.base_id == view.end_base.base_id

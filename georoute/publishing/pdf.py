@@ -35,9 +35,8 @@ def pdf_maker(plan_id: str) -> Callable[[str], bytes]:
         WeasyPrint, or the library that sets its text, is not installed.
     """
     try:
-        # an extra: nobody else pays for it
-        from weasyprint import HTML  # noqa: PLC0415
-        from weasyprint.urls import URLFetcher  # noqa: PLC0415
+        from weasyprint import HTML  # noqa: PLC0415  # an extra: nobody else pays for it
+        from weasyprint.urls import URLFetcher  # noqa: PLC0415  # as above
     except ImportError as error:
         msg = (
             "A PDF needs WeasyPrint, which is not installed. Install it by "

@@ -100,6 +100,20 @@ function drawDay(map) {
       show(stop.number, { focusPlate: byKey });
     });
   });
+  function close() {
+    const open = state.current;
+    if (!open) return;
+    state.current = 0;
+    const row = document.getElementById(`stop-${open}`);
+    row.removeAttribute("aria-current");
+    fit();
+    sheet.refresh();
+    row.querySelector("button").focus({ preventScroll: true });
+    row.scrollIntoView({ block: "nearest" });
+  }
+  document.addEventListener("keydown", (event) => {
+    if (event.key === "Escape") close();
+  });
   const step = (by) => () => {
     const last = tour.stops.length;
     show(Math.min(last, Math.max(1, (state.current || (by > 0 ? 0 : last + 1)) + by)));

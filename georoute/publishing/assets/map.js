@@ -50,7 +50,7 @@ function drawGrid(map, group) {
     const b = map.latLngToLayerPoint([Math.min(high.lat, 85), k * step]);
     group.append(svg("line", { x1: a.x, y1: a.y, x2: b.x, y2: b.y }));
     const at = a.x - corner.x;
-    if (at < 70 || at > size.x - 60) continue;
+    if (at < (isPhone() ? 180 : 70) || at > size.x - 60) continue; // under the buttons
     group.append(svg("text", { x: a.x + 3, y: corner.y + 12 }, degrees(k * step, step, true)));
   }
   for (let k = Math.ceil(low.lat / step); k * step <= high.lat; k += 1) {

@@ -95,6 +95,13 @@ function drawOverview(map) {
     const row = document.getElementById(`tour-${number + 1}`);
     if (focusRow) row.querySelector("a").focus();
   }
+  document.addEventListener("keydown", (event) => {
+    if (event.key !== "Escape" || state.chosen < 0) return;
+    const tag = tags[state.chosen];
+    choose(-1, false);
+    // back to where it was opened, if that is still in view
+    if (getComputedStyle(tag).visibility === "visible") tag.focus({ preventScroll: true });
+  });
   tags.forEach((tag, k) => {
     L.DomEvent.disableClickPropagation(tag);
     tag.addEventListener("click", () => choose(k, true));

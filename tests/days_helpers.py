@@ -314,8 +314,13 @@ def slow_loss(problem: Problem, solution: Solution) -> tuple[int, ...]:
     return musts, *losses
 
 
-def best_by_brute_force(problem: Problem) -> tuple[tuple[int, ...], int]:
-    """Return loss and money of the best plan, by trying everything (few visits only)."""
+def best_by_brute_force(
+    problem: Problem, *, fewest_days: bool = False
+) -> tuple[tuple[int, ...], int]:
+    """Return loss and money of the best plan, by trying everything (few visits only).
+
+    With ``fewest_days`` the number of tours stands behind the loss.
+    """
     n_visits, n_shifts = problem.visit_count, problem.shift_count
     tours: list[dict[frozenset[int], tuple[int, tuple[int, ...]]]] = []
     for s in range(n_shifts):
@@ -338,7 +343,8 @@ def best_by_brute_force(problem: Problem) -> tuple[tuple[int, ...], int]:
             for s, members in enumerate(sets)
         ]
         money = sum(tours[s][members][0] for s, members in enumerate(sets) if members)
-        outcome = (slow_loss(problem, Solution(orders=tuple(orders))), money)
+        days = (sum(map(bool, sets)),) if fewest_days else ()
+        outcome = ((*slow_loss(problem, Solution(orders=tuple(orders))), *days), money)
         if best is None or outcome < best:
             best = outcome
     assert best is not None

@@ -147,6 +147,10 @@ FAULTS: list[tuple[str, str, str, str]] = [
     ("missing_table", "travel.table", 'method = "detour"', 'method = "table"'),
     ("missing_table", "travel.table", 'method = "detour"', "method = 'table'"),
     ("missing_table", "travel.table", 'method = "detour"', 'method = "table"\nspeed_kmh = 9'),
+    *(
+        ("unknown_aim", "search.aim", "seed = 7", f'seed = 7\naim = "{aim}"')
+        for aim in ("fewest_day", "", "shortest")
+    ),
     ("unknown_effort", "search.effort", 'effort = "normal"', 'effort = "norml"'),
     ("unknown_effort", "search.effort", 'effort = "normal"', 'effort = ""'),
     ("unknown_effort", "search.effort", 'effort = "normal"', 'effort = "best"'),

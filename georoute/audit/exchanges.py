@@ -11,7 +11,7 @@ from collections import Counter, defaultdict
 from itertools import pairwise
 from typing import TYPE_CHECKING
 
-from georoute.audit.report import MONEY, RELATIVE, close
+from georoute.audit.report import LENGTH_M, MONEY, RELATIVE, TIME_S, close
 from georoute.audit.tours import travel_cost
 
 if TYPE_CHECKING:
@@ -62,12 +62,15 @@ def _check_entry(plan: Plan, entry: Exchange, ruler: Ruler, report: Report) -> N
     out, into = _price(plan, ruler, entry.legs_out), _price(plan, ruler, entry.legs_in)
     if out is None or into is None:
         return
+    # The planner prices legs rounded to whole milliseconds and millimetres.
+    legs = len(entry.legs_out) + len(entry.legs_in)
+    rounding = legs * travel_cost(plan.programme, drive_s=TIME_S, dist_m=LENGTH_M)
     report.figure(
         "exchange_gain",
         f"{_where(entry)}: change of the cost",
         expected=into - out,
         got=entry.cost_after - entry.cost_before,
-        tolerance=2 * MONEY + RELATIVE * (out + into),
+        tolerance=2 * MONEY + RELATIVE * (out + into) + rounding,
         subject=entry.tour_id,
     )
 

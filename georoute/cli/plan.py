@@ -12,7 +12,7 @@ from georoute.cli.clock import issue_time
 from georoute.cli.render import print_caution, print_findings, print_json, stderr
 from georoute.cli.running import progress_line, stop_on_interrupt
 from georoute.cli.summary import as_json, capacity_line, print_plan
-from georoute.domain.run import EFFORTS, EffortName
+from georoute.domain.run import EFFORTS, Aim, EffortName
 
 if TYPE_CHECKING:
     from georoute.domain.plan import Plan
@@ -24,13 +24,19 @@ COMPILING = "The first run compiles the search, which takes a minute or two; lat
 
 
 def _with_search_settings(
-    programme: Programme, *, effort: EffortName | None, seconds: float | None, seed: int | None
+    programme: Programme,
+    *,
+    aim: Aim | None,
+    effort: EffortName | None,
+    seconds: float | None,
+    seed: int | None,
 ) -> Programme:
     """Return the programme with the settings of the command line in place of its own."""
     chosen = programme.effort if effort is None else EFFORTS[effort]
     limit = programme.effort.seconds if seconds is None else seconds
     return replace(
         programme,
+        aim=programme.aim if aim is None else aim,
         effort=replace(chosen, seconds=limit),
         seed=programme.seed if seed is None else seed,
     )
@@ -74,6 +80,10 @@ def plan(
     maps: Annotated[Path, typer.Option(help="Folder for the pages, in the current folder.")] = Path(
         "maps"
     ),
+    aim: Annotated[
+        Aim | None,
+        typer.Option(help="What decides when the same visits are left out."),
+    ] = None,
     effort: Annotated[
         EffortName | None, typer.Option(help="How hard to search; counted in steps.")
     ] = None,
@@ -103,6 +113,7 @@ def plan(
 
     settings = _with_search_settings(
         read_programme(programme),
+        aim=aim,
         effort=effort,
         seconds=seconds,
         seed=seed,

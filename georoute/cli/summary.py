@@ -8,6 +8,7 @@ from rich.text import Text
 
 from georoute.cli.render import clock_span, counted, hours, kilometres, money, new_table, stdout
 from georoute.domain.cautions import CAUTIONS
+from georoute.domain.run import Aim
 
 if TYPE_CHECKING:
     from georoute.domain.plan import Capacity, DayTour, Plan, Stop, Unplaced
@@ -15,6 +16,10 @@ if TYPE_CHECKING:
 __all__ = ["as_json", "capacity_line", "print_plan", "print_tour", "print_unplaced"]
 
 WORST_SHOWN = 10
+AIM_WORDS = {
+    Aim.LEAST_COST: "the least cost",
+    Aim.FEWEST_DAYS: "the fewest days, then the least cost",
+}
 
 
 def capacity_line(capacity: Capacity) -> str:
@@ -52,6 +57,16 @@ def _stage_line(plan: Plan) -> str:
     )
     note = " The first two may still break limits." if len(plan.stages) > 1 else ""
     return "Cost " + ", ".join(told) + "." + note
+
+
+def _balance_line(plan: Plan) -> str:
+    """Say who is out on how many days and for how long, from departure to the write-up's end."""
+    told = []
+    for person in plan.programme.inspectors:
+        own = [tour for tour in plan.tours if tour.inspector_id == person.inspector_id]
+        out = sum((tour.finish - tour.depart).total_seconds() for tour in own)
+        told.append(f"{person.name} {hours(out)} on {counted(len(own), 'day')}")
+    return "Hours out: " + ", ".join(told) + "."
 
 
 def print_unplaced(unplaced: tuple[Unplaced, ...], *, most: int | None = None) -> None:
@@ -100,7 +115,11 @@ def print_plan(plan: Plan, *, capacity: bool = True) -> None:
     )
     console.print(Text(_stage_line(plan)))
     console.print(Text(_travel_line(plan)))
-    console.print(f"The search ended because: {plan.provenance.stop_rule.value}. No bound yet.")
+    console.print(Text(_balance_line(plan)))
+    console.print(
+        f"Searched for {AIM_WORDS[plan.programme.aim]}; it ended because: "
+        f"{plan.provenance.stop_rule.value}. No bound yet."
+    )
 
 
 def _stop_row(plan: Plan, stop: Stop, leg_min: float) -> tuple[str | Text, ...]:
@@ -197,6 +216,7 @@ def as_json(plan: Plan) -> dict[str, object]:
             {"stage": stage.stage, "cost": stage.cost, "placed": stage.placed}
             for stage in plan.stages
         ],
+        "aim": plan.programme.aim.value,
         "stop_rule": plan.provenance.stop_rule.value,
         "tours": [_tour_json(tour) for tour in plan.tours],
         "unplaced": [

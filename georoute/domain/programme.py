@@ -11,7 +11,7 @@ from zoneinfo import ZoneInfo
 
 from georoute.domain.costs import Tariff
 from georoute.domain.people import Inspector, Shift, shift_id_of
-from georoute.domain.run import Effort
+from georoute.domain.run import Aim, Effort
 from georoute.domain.sites import Base
 
 __all__ = [
@@ -98,6 +98,7 @@ class Programme:
     seed: int
     effort: Effort
     register: RegisterSource
+    aim: Aim = Aim.LEAST_COST
     source: str = ""
     sha256: str = ""
 

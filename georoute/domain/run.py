@@ -1,4 +1,4 @@
-"""How hard to search, and the two callables a caller hands in to watch and to stop it."""
+"""What to search for, how hard, and the two callables a caller hands in to watch and to stop it."""
 
 from __future__ import annotations
 
@@ -6,7 +6,27 @@ from dataclasses import dataclass
 from enum import StrEnum
 from typing import Protocol
 
-__all__ = ["EFFORTS", "Effort", "EffortName", "Progress", "ShouldStop", "never_stop", "no_progress"]
+__all__ = [
+    "EFFORTS",
+    "Aim",
+    "Effort",
+    "EffortName",
+    "Progress",
+    "ShouldStop",
+    "never_stop",
+    "no_progress",
+]
+
+
+class Aim(StrEnum):
+    """What decides between plans that leave out the same visits.
+
+    ``LEAST_COST``: money. ``FEWEST_DAYS``: the number of days on which an inspector goes out,
+    summed over inspectors; money decides between equals.
+    """
+
+    LEAST_COST = "least_cost"
+    FEWEST_DAYS = "fewest_days"
 
 
 class EffortName(StrEnum):

@@ -8,7 +8,7 @@ import numpy as np
 
 from georoute.kernels.annealing import Guide
 from georoute.kernels.arrays import UNREACHABLE
-from georoute.kernels.slack_state import Facts
+from georoute.kernels.slack_state import KIND, Facts
 from georoute.problem.board import losses
 
 if TYPE_CHECKING:
@@ -23,6 +23,8 @@ NO_LEG = 1 << 52
 FEWER_TOURS = 100
 """Micro-units added to the price of a day, so that of equal plans the one with fewer tours wins."""
 NEAREST = 500
+HANDOVER_SHARE = 0.05
+"""Share of the steps that hand whole tours over, where shifts differ."""
 RULE_WEIGHTS = {"random": 4.0, "demand": 4.0, "far": 2.0, "close": 1.0}
 WINDOW_WEIGHTS = {"window_length": 2.0, "opens": 2.0, "closes": 2.0}
 """Orders of insertion and how often they are drawn: the weights of the paper."""
@@ -139,4 +141,10 @@ def _keys(problem: Problem, facts: Facts) -> tuple[NDArray[np.float64], NDArray[
 def guide_of(problem: Problem, facts: Facts) -> Guide:
     """Return neighbours and orders of insertion."""
     keys, weights = _keys(problem, facts)
-    return Guide(near=_near(problem, facts), keys=keys, weights=weights)
+    alike = np.ptp(facts.shift[:, KIND]) == 0
+    return Guide(
+        near=_near(problem, facts),
+        keys=keys,
+        weights=weights,
+        handover_share=0.0 if alike else HANDOVER_SHARE,
+    )

@@ -62,7 +62,7 @@ def read_move(kind: str, board: Board, step: Step, *, cost_before: int) -> Move:
         tours.append((s, before, after))
         came_from.update(dict.fromkeys(before.tolist(), s))
         now_at.update(dict.fromkeys(after.tolist(), s))
-        cost += int(board.tour[s, MONEY] - step.money[s])
+        cost += int(board.tour[s, MONEY]) - int(step.money[s])
     visits = tuple(
         (v, came_from.get(v, -1), now_at.get(v, -1))
         for v in sorted(came_from.keys() | now_at.keys())

@@ -66,7 +66,7 @@ class _Relocation:
         self.step = make_step(self.board)
         self.should_stop = should_stop
         self.moves: list[Move] = []
-        self.cost = int(self.board.tour[:, MONEY].sum())
+        self.cost = sum(self.board.tour[:, MONEY].tolist())
         everywhere = problem.visit_count + problem.shift_count
         self.wide = int(problem.visit_count <= WIDE_UP_TO)
         positions = everywhere if self.wide else LOCAL_SCAN + problem.shift_count
@@ -234,6 +234,8 @@ def _search(state: _Relocation, effort: Effort, seed: int, progress: Progress) -
     _Ended
         The caller wants the search to end.
     """
+    if state.problem.visit_count == 0 or state.problem.shift_count == 0:
+        return  # there is nothing to draw from
     state.place()
     state.find_room(state.absent())
     if state.problem.shift_count == 1 and state.absent().size == 0:

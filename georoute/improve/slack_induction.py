@@ -8,13 +8,9 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from georoute.improve.guide import FEWER_TOURS, facts_of, guide_of
-from georoute.kernels.annealing import Book, anneal
-from georoute.kernels.random_stream import new_stream
-from georoute.kernels.slack_state import COUNT, FARE, LOSS, MONEY, STOP, rows_of, write_row
-from georoute.kernels.windowed_rows import Clockwork, price_by_clock
-from georoute.problem import MICRO, Problem, Solution
-from georoute.problem.board import most_stops
+from georoute.improve.fewer_tours import FewestDays
+from georoute.improve.guide import FEWER_TOURS
+from georoute.improve.search_state import SearchState
 from georoute.timetable import solution_cost
 
 if TYPE_CHECKING:
@@ -23,6 +19,7 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from georoute.domain.run import Effort, Progress, ShouldStop
+    from georoute.problem import Problem, Solution
 
 __all__ = ["ImproveResult", "improve"]
 
@@ -73,77 +70,13 @@ class _Schedule:
         self._chunk = int(np.clip(steps * CHUNK_S / max(seconds, 1e-9), 1, 100_000))
 
 
-class _Search:
-    """Arrays of one search, and their way back to a solution."""
-
-    def __init__(self, problem: Problem, solution: Solution, seed: int) -> None:
-        count, number = problem.shift_count, problem.visit_count
-        windowed = problem.visits.window_open_ms.shape[0] > 0
-        self.clockwork = (
-            Clockwork(problem.travel, problem.visits, problem.shifts) if windowed else None
-        )
-        self.facts = facts_of(problem)
-        self.guide = guide_of(problem, self.facts)
-        width = max(most_stops(problem), *(order.shape[0] for order in solution.orders))
-        self.rows = rows_of(count, number, width)
-        self.backup = rows_of(count, 0, width)
-        self.stream = new_stream(seed, 0)
-        for s, order in enumerate(solution.orders):
-            write_row(self.facts, self.rows, s, order)
-            if self.clockwork is not None:
-                price_by_clock(self.clockwork, self.rows, s)
-        absent = solution.unplaced(number)
-        money = self.rows.sum[:, MONEY].sum()
-        lost = self.loss[absent].sum()
-        spare = np.zeros(number, np.int64)
-        self.book = Book(
-            best_stop=self.rows.cell[STOP].copy(),
-            best_count=self.rows.sum[:, COUNT].copy(),
-            changed=np.zeros(count, np.int64),
-            absent=np.concatenate([absent, spare])[:number],
-            absent_before=spare.copy(),
-            absences=spare.copy(),
-            sums=np.array([money, lost, absent.shape[0], money, lost, 0], np.int64),
-            touch=np.zeros(count + 1, np.int64),
-            seen=np.zeros(count, np.int64),
-            blink=np.full(1, 100, np.int64),
-        )
-
-    @property
-    def loss(self) -> NDArray[np.int64]:
-        return self.facts.visit[:, LOSS]
-
-    @property
-    def mean_leg(self) -> float:
-        legs = float((self.rows.sum[:, COUNT] + (self.rows.sum[:, COUNT] > 0)).sum())
-        return float(self.rows.sum[:, FARE].sum()) / legs if legs else 1.0
-
-    def step(self, steps: int, warmth: float) -> None:
-        anneal(
-            self.clockwork,
-            self.facts,
-            self.rows,
-            self.backup,
-            self.guide,
-            self.book,
-            steps,
-            warmth,
-            self.stream,
-        )
-
-    def best(self) -> Solution:
-        return Solution(
-            orders=tuple(
-                self.book.best_stop[s, 1 : count + 1].copy()
-                for s, count in enumerate(self.book.best_count)
-            )
-        )
-
-
-def _value(problem: Problem, solution: Solution, loss: NDArray[np.int64]) -> tuple[int, int]:
+def _value(
+    problem: Problem, solution: Solution, loss: NDArray[np.int64], *, fewest_days: bool
+) -> tuple[int, int, int]:
     lost = int(loss[solution.unplaced(problem.visit_count)].sum())
     tours = sum(order.shape[0] > 0 for order in solution.orders)
-    return lost, solution_cost(problem, solution) + tours * FEWER_TOURS
+    money = solution_cost(problem, solution) + tours * FEWER_TOURS
+    return lost, tours if fewest_days else 0, money
 
 
 def improve(  # noqa: PLR0913 - a budget is several plain values
@@ -155,10 +88,12 @@ def improve(  # noqa: PLR0913 - a budget is several plain values
     progress: Progress,
     should_stop: ShouldStop,
     share_spent: Callable[[], float] | None = None,
+    fewest_days: bool = False,
 ) -> ImproveResult:
     """Improve all days together, from any feasible solution, never to a worse one.
 
-    What is left out comes first, by rank and then by worth; then money decides. The search does
+    What is left out comes first, by rank and then by worth; then, with ``fewest_days``, the
+    number of tours; then money decides. The search does
     ``effort.improve_steps`` steps per visit and is the same on every run; with ``share_spent``,
     which tells the share, 0 to 1, of a budget in time that is used, it cools and ends by that
     instead. ``should_stop`` ends it at once with the best so far.
@@ -168,22 +103,21 @@ def improve(  # noqa: PLR0913 - a budget is several plain values
     """
     if problem.visit_count == 0 or problem.shift_count == 0:
         return ImproveResult(solution=solution, steps=0)
-    search = _Search(problem, solution, seed)
+    state = SearchState(problem, solution, seed)
     schedule = _Schedule(effort.improve_steps * problem.visit_count, share_spent)
-    search.step(1, 0.0)
-    hot = HOT * search.mean_leg
+    days = FewestDays(problem, state) if fewest_days else None
+    state.step(1, 0.0)
+    hot = HOT * state.mean_leg
     while (share := schedule.share) < 1.0 and not should_stop():
-        progress(
-            "days",
-            fraction=share,
-            cost=int(search.book.sums[0]) / MICRO,
-            best_cost=int(search.book.sums[3]) / MICRO,
-        )
+        progress("days", fraction=share, cost=state.cost, best_cost=state.best_cost)
+        if days is not None:
+            days.steer(share)
         steps = schedule.next_chunk()
         begin = time.perf_counter()
-        search.step(steps, hot * (COLD / HOT) ** share)
+        state.step(steps, hot * (COLD / HOT) ** share)
         schedule.took(steps, time.perf_counter() - begin)
-    found = search.best()
-    if _value(problem, found, search.loss) < _value(problem, solution, search.loss):
+    found = state.best()
+    better = _value(problem, found, state.loss, fewest_days=fewest_days)
+    if better < _value(problem, solution, state.loss, fewest_days=fewest_days):
         solution = found
     return ImproveResult(solution=solution, steps=schedule.done)

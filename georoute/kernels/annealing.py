@@ -1,4 +1,4 @@
-"""Ruin and recreate under simulated annealing, in chunks, so that the caller can look in between.
+"""Simulated annealing by ruin and recreate, in chunks, so that the caller can look in between.
 
 J. Christiaens, G. Vanden Berghe, "Slack induction by string removals for vehicle routing
 problems", Transportation Science 54 (2020) 417-433, sections 4 and 4.3 (visits that do not all
@@ -14,6 +14,7 @@ from numpy.typing import NDArray
 
 from georoute.kernels._jit import Float, Int, kernel
 from georoute.kernels.arrays import UNREACHABLE
+from georoute.kernels.handover import hand_over
 from georoute.kernels.random_stream import uniform
 from georoute.kernels.recreate import recreate
 from georoute.kernels.ruin import ruin
@@ -36,16 +37,21 @@ from georoute.kernels.windowed_rows import Clockwork, breaks_a_limit, price_by_c
 
 __all__ = ["Book", "Guide", "anneal"]
 
+# Columns of Book.sums
+MONEY_NOW, LOSS_NOW, MISSING, BEST_MONEY, BEST_LOSS, IMPROVEMENTS = 0, 1, 2, 3, 4, 5
+
 
 class Guide(NamedTuple):
     """What guides a search: ``near`` (int32, (V, K)), the nearest visits of each, itself first.
 
-    ``keys`` and ``weights``: orders of insertion, see ``recreate``.
+    ``keys`` and ``weights``: orders of insertion, see ``recreate``. ``handover_share``:
+    share of the steps that hand whole tours over instead.
     """
 
     near: NDArray[np.int32]
     keys: NDArray[np.float64]
     weights: NDArray[np.float64]
+    handover_share: float
 
 
 class Book(NamedTuple):
@@ -55,7 +61,7 @@ class Book(NamedTuple):
     tour differs from the best. ``absent``, ``absent_before`` (V,): absent visits. ``absences``
     (V,): how often each was left absent. ``sums`` (6,): money now, loss now, number absent
     now, money of the best, loss of the best, improvements. ``touch`` (S + 1,).
-    ``seen`` (kinds,). ``blink`` (1,).
+    ``seen`` (kinds,). ``meter`` (3,): see ``recreate``.
     """
 
     best_stop: NDArray[np.int64]
@@ -67,7 +73,7 @@ class Book(NamedTuple):
     sums: NDArray[np.int64]
     touch: NDArray[np.int64]
     seen: NDArray[np.int64]
-    blink: NDArray[np.int64]
+    meter: NDArray[np.int64]
 
 
 @kernel
@@ -95,9 +101,9 @@ def _keep_best(rows: Rows, book: Book) -> None:
                 book.best_stop[s, k] = rows.cell[STOP, s, k]
             book.best_count[s] = n
             book.changed[s] = 0
-    book.sums[3] = book.sums[0]
-    book.sums[4] = book.sums[1]
-    book.sums[5] += 1
+    book.sums[BEST_MONEY] = book.sums[MONEY_NOW]
+    book.sums[BEST_LOSS] = book.sums[LOSS_NOW]
+    book.sums[IMPROVEMENTS] += 1
 
 
 @kernel
@@ -105,7 +111,7 @@ def _take_back(rows: Rows, backup: Rows, book: Book) -> None:
     """Restore every touched row and the list of absent visits."""
     for i in range(1, book.touch[0] + 1):
         take_back_row(rows, backup, book.touch[i])
-    for k in range(book.sums[2]):
+    for k in range(book.sums[MISSING]):
         v = book.absent_before[k]
         book.absent[k] = v
         rows.link[WHERE, v] = -1
@@ -114,17 +120,24 @@ def _take_back(rows: Rows, backup: Rows, book: Book) -> None:
 @kernel
 def _wanted(book: Book, money: Int, lost: Int, n_absent: Int, slack: Float) -> bool | np.bool_:
     """Decide whether the changed state replaces the one at hand: first by loss, then by money."""
-    if lost == book.sums[1]:
-        return money < book.sums[0] + slack
-    if lost < book.sums[1]:
+    if lost == book.sums[LOSS_NOW]:
+        return money < book.sums[MONEY_NOW] + slack
+    if lost < book.sums[LOSS_NOW]:
         return True
     now = np.int64(0)
     before = np.int64(0)
     for k in range(n_absent):
         now += book.absences[book.absent[k]]
-    for k in range(book.sums[2]):
+    for k in range(book.sums[MISSING]):
         before += book.absences[book.absent_before[k]]
     return now < before
+
+
+@kernel
+def _price_touched(clockwork: Clockwork | None, rows: Rows, touch: NDArray[np.int64]) -> None:
+    if clockwork is not None:
+        for i in range(1, touch[0] + 1):
+            price_by_clock(clockwork, rows, touch[i])
 
 
 @kernel
@@ -145,29 +158,31 @@ def anneal(
     """
     absent, touch, sums = book.absent, book.touch, book.sums
     for _ in range(steps):
-        n_absent = sums[2]
+        n_absent = sums[MISSING]
         for k in range(n_absent):
             book.absent_before[k] = absent[k]
         touch[0] = 0
-        n_absent = ruin(facts, rows, guide.near, absent, n_absent, touch, backup, stream)
-        if clockwork is not None:
-            for i in range(1, touch[0] + 1):
-                price_by_clock(clockwork, rows, touch[i])
-        n_absent = recreate(
-            clockwork,
-            facts,
-            rows,
-            guide.keys,
-            guide.weights,
-            absent,
-            n_absent,
-            touch,
-            backup,
-            book.seen,
-            book.blink,
-            stream,
-        )
-        money = sums[0]
+        if guide.handover_share > 0.0 and uniform(stream) < guide.handover_share:
+            hand_over(facts, rows, touch, backup, stream)
+            _price_touched(clockwork, rows, touch)
+        else:
+            n_absent = ruin(facts, rows, guide.near, absent, n_absent, touch, backup, stream)
+            _price_touched(clockwork, rows, touch)
+            n_absent = recreate(
+                clockwork,
+                facts,
+                rows,
+                guide.keys,
+                guide.weights,
+                absent,
+                n_absent,
+                touch,
+                backup,
+                book.seen,
+                book.meter,
+                stream,
+            )
+        money = sums[MONEY_NOW]
         broken = np.int64(0)
         for i in range(1, touch[0] + 1):
             s = touch[i]
@@ -182,10 +197,10 @@ def anneal(
             continue
         for i in range(1, touch[0] + 1):
             book.changed[touch[i]] = 1
-        sums[0] = money
-        sums[1] = lost
-        sums[2] = n_absent
+        sums[MONEY_NOW] = money
+        sums[LOSS_NOW] = lost
+        sums[MISSING] = n_absent
         for k in range(n_absent):
             book.absences[absent[k]] += 1
-        if lost < sums[4] or (lost == sums[4] and money < sums[3]):
+        if lost < sums[BEST_LOSS] or (lost == sums[BEST_LOSS] and money < sums[BEST_MONEY]):
             _keep_best(rows, book)

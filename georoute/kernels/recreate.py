@@ -50,6 +50,9 @@ __all__ = ["recreate"]
 Found: TypeAlias = tuple[Int, Int, Int]
 """Rise of money, shift, column."""
 
+# Columns of meter
+BLINK, MOST_TOURS, SPARE_TOURS = 0, 1, 2
+
 LOG_KEPT = np.log(0.99)
 """Log of the share of places looked at: one in a hundred is blinked away."""
 
@@ -66,7 +69,7 @@ def _plain_place(
     rows: Rows,
     v: Int,
     seen: NDArray[np.int64],
-    blink: NDArray[np.int64],
+    meter: NDArray[np.int64],
     stream: NDArray[np.uint64],
 ) -> Found:
     """Return (rise, shift, column) of the cheapest place for a visit without windows.
@@ -86,7 +89,7 @@ def _plain_place(
     for s in range(total.shape[0]):
         n = total[s, COUNT]
         if n == 0:
-            if seen[shift[s, KIND]] == v:
+            if meter[SPARE_TOURS] == 0 or seen[shift[s, KIND]] == v:
                 continue
             seen[shift[s, KIND]] = v
         if total[s, WINDOWED] > 0 or total[s, LOADED] + load > shift[s, LOAD_LIMIT]:
@@ -109,17 +112,18 @@ def _plain_place(
         for k in range(1, n + 2):
             there = seats[s, k]
             rise = fare[c, here, p] + fare[c, p, there] - into[s, k] + fixed
-            if rise < best:
+            # Overtime only adds, unless it is cheaper than an ordinary hour.
+            if rise < best or surcharge < 0.0:
                 gone = ms[here, there] if n > 0 else np.int64(0)
                 then = now + work - gone + ms[here, p] + ms[p, there]
                 if then <= room:
                     over = max(np.int64(0), then - paid)
                     rise += np.int64(surcharge * over - old_extra)
                     if rise < best:
-                        if blink[0] == 0:
-                            blink[0] = _next_blink(stream)
+                        if meter[BLINK] == 0:
+                            meter[BLINK] = _next_blink(stream)
                         else:
-                            blink[0] -= 1
+                            meter[BLINK] -= 1
                             best = rise
                             best_shift = np.int64(s)
                             column = np.int64(k)
@@ -135,6 +139,7 @@ def _windowed_place(
     v: Int,
     found: Found,
     seen: NDArray[np.int64],
+    meter: NDArray[np.int64],
 ) -> Found:
     """Improve on ``found`` in the tours where the visit or a stop has windows."""
     best, best_shift, column = found
@@ -142,7 +147,7 @@ def _windowed_place(
         if rows.sum[s, WINDOWED] == 0 and facts.visit[v, TIMED] == 0:
             continue
         if rows.sum[s, COUNT] == 0:
-            if seen[facts.shift[s, KIND]] == v:
+            if meter[SPARE_TOURS] == 0 or seen[facts.shift[s, KIND]] == v:
                 continue
             seen[facts.shift[s, KIND]] = v
         heavy = rows.sum[s, LOADED] + facts.visit[v, LOAD] > facts.shift[s, LOAD_LIMIT]
@@ -199,32 +204,38 @@ def recreate(
     touch: NDArray[np.int64],
     backup: Rows,
     seen: NDArray[np.int64],
-    blink: NDArray[np.int64],
+    meter: NDArray[np.int64],
     stream: NDArray[np.uint64],
 ) -> Int:
     """Put absent visits back; return how many stay absent (moved to the front of ``absent``).
 
     ``clockwork`` is ``None`` where no visit has windows: the compiler then leaves that part out.
     ``keys`` (float64, (R, V)): orders to take the visits in, drawn with the cumulative
-    ``weights`` (R,). ``blink`` (1,): places to the next blink. ``seen``: scratch, one per kind
-    of shift and pass.
+    ``weights`` (R,). ``meter`` (3,): places to the next blink, the most tours there may be, and
+    how many more may be opened. ``seen``: scratch, one per kind of shift and pass.
     """
     _draw_order(keys, weights, absent, n_absent, stream)
+    meter[SPARE_TOURS] = meter[MOST_TOURS]
+    for s in range(rows.sum.shape[0]):
+        if rows.sum[s, COUNT] > 0:
+            meter[SPARE_TOURS] -= 1
     left = np.int64(0)
     for i in range(n_absent):
         v = absent[i]
         found: Found = (np.int64(INFEASIBLE), np.int64(-1), np.int64(-1))
         seen[:] = -1
         if facts.visit[v, TIMED] == 0:
-            found = _plain_place(facts, rows, v, seen, blink, stream)
+            found = _plain_place(facts, rows, v, seen, meter, stream)
         if clockwork is not None:
-            found = _windowed_place(clockwork, facts, rows, v, found, seen)
-        rise, s, column = found
-        if s < 0:
+            found = _windowed_place(clockwork, facts, rows, v, found, seen, meter)
+        rise, row, column = found
+        if row < 0:
             absent[left] = v
             left += 1
         else:
-            save_row(rows, backup, touch, s)
-            insert(facts, rows, s, column, v)
-            rows.sum[s, MONEY] += rise
+            save_row(rows, backup, touch, row)
+            if rows.sum[row, COUNT] == 0:
+                meter[SPARE_TOURS] -= 1
+            insert(facts, rows, row, column, v)
+            rows.sum[row, MONEY] += rise
     return left

@@ -80,6 +80,7 @@ def _plan_id(programme: Programme, register: Register) -> str:
             register.sha256,
             programme.sha256,
             str(programme.seed),
+            programme.aim.value,
             programme.effort.name,
             str(programme.effort.seconds),
         )

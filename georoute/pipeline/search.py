@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from georoute.domain.run import Aim
 from georoute.improve import improve, relocate
 from georoute.pipeline.exchange_log import ExchangeLog
 from georoute.problem import MICRO, Solution
@@ -111,6 +112,7 @@ class _Search:
             progress=self.progress,
             should_stop=budget,
             share_spent=(lambda: budget.share_spent() / TOGETHER_SHARE) if budget.timed else None,
+            fewest_days=self.packed.programme.aim is Aim.FEWEST_DAYS,
         )
         return self._take(found.solution)
 

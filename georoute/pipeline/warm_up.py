@@ -48,6 +48,8 @@ def warm_up(problem: Problem, effort: Effort) -> None:
     The first run on a machine compiles the kernels, which takes far longer than a search;
     later runs find them in the cache. A search limited in seconds must not pay for it.
     """
+    if problem.visit_count == 0 or problem.shift_count == 0:
+        return  # there is nothing to search
     shifts = _few_shifts(problem.shifts)
     count = int(shifts.open_ms.shape[0])
     corner = replace(problem, shifts=shifts, visits=_few_visits(problem.visits, count))

@@ -108,6 +108,7 @@ class Code(StrEnum):
     OVERTIME_BEYOND_SHIFT = "overtime_beyond_shift"
     NEGATIVE_MONEY = "negative_money"
     UNKNOWN_TRAVEL_METHOD = "unknown_travel_method"
+    UNKNOWN_AIM = "unknown_aim"
     UNKNOWN_EFFORT = "unknown_effort"
     MISSING_TABLE = "missing_table"
 
@@ -199,6 +200,7 @@ CODE_MEANINGS: Mapping[Code, tuple[Severity, str]] = MappingProxyType(
         Code.OVERTIME_BEYOND_SHIFT: (_W, "The shift ends before the overtime limit is reached."),
         Code.NEGATIVE_MONEY: (_F, "A price is below 0."),
         Code.UNKNOWN_TRAVEL_METHOD: (_F, "A travel method that does not exist."),
+        Code.UNKNOWN_AIM: (_F, "An aim that does not exist."),
         Code.UNKNOWN_EFFORT: (_F, "An effort that does not exist."),
         Code.MISSING_TABLE: (_F, "The travel method is `table` and no table is named."),
     }

@@ -8,7 +8,7 @@ from datetime import timedelta
 from typing import TYPE_CHECKING
 
 from georoute.domain.programme import TravelMethod
-from georoute.domain.run import EFFORTS
+from georoute.domain.run import EFFORTS, Aim
 from georoute.register.calendars import CalendarRules, calendar_of, merged, unknown_holidays
 from georoute.register.codes import Code, nearest, nearest_words
 from georoute.register.columns import COLUMNS
@@ -179,6 +179,15 @@ def _check_choices(parts: Parts, notebook: Notebook) -> None:
             "the travel method is `table` and no table is named",
             'add `table = "travel.csv"`',
             at=("travel", "table"),
+        )
+    aims = [aim.value for aim in Aim]
+    if parts.search.aim not in aims:
+        notebook.add(
+            Code.UNKNOWN_AIM,
+            f"there is no aim `{parts.search.aim}`",
+            nearest_words(parts.search.aim, aims),
+            at=("search", "aim"),
+            value=parts.search.aim,
         )
     if parts.search.effort not in EFFORTS:
         notebook.add(

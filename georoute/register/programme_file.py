@@ -19,7 +19,7 @@ from georoute.domain.programme import (
     TravelMethod,
     TravelSettings,
 )
-from georoute.domain.run import EFFORTS
+from georoute.domain.run import EFFORTS, Aim
 from georoute.domain.sites import Base
 from georoute.errors import ProgrammeError
 from georoute.register.calendars import calendar_of, merged
@@ -184,6 +184,7 @@ def _programme(path: Path, digest: str, parts: Parts) -> Programme | None:
         travel=_travel(path, parts.travel),
         default_work_s=parts.work.work_min * 60.0,
         default_access_s=parts.work.access_min * 60.0,
+        aim=Aim(parts.search.aim),
         seed=parts.search.seed,
         effort=replace(EFFORTS[parts.search.effort], seconds=parts.search.seconds),
         register=_register_source(path, register),

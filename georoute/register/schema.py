@@ -12,7 +12,7 @@ from pydantic import BaseModel, BeforeValidator, ConfigDict, Field
 from pydantic_core import PydanticCustomError
 
 from georoute.domain.programme import DetourModel, TravelMethod
-from georoute.domain.run import EFFORTS
+from georoute.domain.run import EFFORTS, Aim
 
 __all__ = [
     "DEFAULT_DETOUR",
@@ -313,8 +313,13 @@ class TravelSection(Section):
 
 
 class SearchSection(Section):
-    """How hard to search."""
+    """What to search for, and how hard."""
 
+    aim: Text = Field(
+        default=Aim.LEAST_COST.value,
+        description="What decides when the same visits are left out: `least_cost`, or "
+        "`fewest_days` (inspector-days first, then cost).",
+    )
     seed: Annotated[int, Field(ge=0, le=_LARGEST_SEED), Words("whole number", "1")] = Field(
         default=1, description="Same inputs, seed and effort give the same plan."
     )

@@ -34,7 +34,14 @@ TINY = Recipe(visits=5, shifts=2, paid_min=(150, 300), windowed=0.2, loaded=0.3,
 TINY_PLAIN = replace(TINY, windowed=0.0, double_windowed=0.0)
 
 
-def improved(problem: Problem, start: Solution, *, seed: int = 1, steps: int = 20) -> ImproveResult:
+def improved(
+    problem: Problem,
+    start: Solution,
+    *,
+    seed: int = 1,
+    steps: int = 20,
+    fewest_days: bool = False,
+) -> ImproveResult:
     return improve(
         problem,
         start,
@@ -42,6 +49,7 @@ def improved(problem: Problem, start: Solution, *, seed: int = 1, steps: int = 2
         seed=seed,
         progress=no_progress,
         should_stop=never_stop,
+        fewest_days=fewest_days,
     )
 
 
@@ -97,6 +105,38 @@ def test_small_problems_are_solved_to_the_best_that_trying_everything_finds(reci
         found = improved(problem, feasible_start(problem, seed), steps=200)
         last = sequence(problem, found.solution, effort=FEW, seed=1, keep_log=False).solution
         met += outcome(problem, last) == best_by_brute_force(problem)
+    assert met >= 39
+
+
+def outcome_by_days(problem: Problem, solution: Solution) -> tuple[tuple[int, ...], int]:
+    days = sum(order.shape[0] > 0 for order in solution.orders)
+    return (*slow_loss(problem, solution), days), slow_cost(problem, solution)
+
+
+@given(seed=seeds, recipe=recipes)
+def test_fewest_days_first_never_leaves_more_out_nor_needs_more_days(
+    seed: int, recipe: Recipe
+) -> None:
+    problem = random_problem(seed, recipe)
+    start = feasible_start(problem, seed)
+    found = improved(problem, start, seed=seed, fewest_days=True)
+    assert slow_breaches(problem, found.solution) == []
+    assert outcome_by_days(problem, found.solution) <= outcome_by_days(problem, start)
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("recipe", [TINY, TINY_PLAIN], ids=["windows", "plain"])
+def test_fewest_days_of_small_problems_are_those_that_trying_everything_finds(
+    recipe: Recipe,
+) -> None:
+    met = 0
+    for seed in range(40):
+        # A day out costs nothing, so that the least money takes more days where it can.
+        problem = random_problem(seed, replace(recipe, shifts=3, day_cost=0))
+        found = improved(problem, feasible_start(problem, seed), steps=200, fewest_days=True)
+        last = sequence(problem, found.solution, effort=FEW, seed=1, keep_log=False).solution
+        best = best_by_brute_force(problem, fewest_days=True)
+        met += outcome_by_days(problem, last) == best
     assert met >= 39
 
 

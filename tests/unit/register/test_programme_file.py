@@ -10,7 +10,7 @@ import holidays
 import pytest
 
 from georoute.domain.programme import Programme, TravelMethod
-from georoute.domain.run import EFFORTS
+from georoute.domain.run import EFFORTS, Aim
 from georoute.register import check_programme, programme_fields, read_programme
 from georoute.register.schema import DEFAULT_DETOUR
 
@@ -110,6 +110,7 @@ low_factor = 0.8
 high_factor = 1.25
 
 [search]
+aim = "fewest_days"
 seed = 7
 effort = "quick"
 seconds = 2.5
@@ -174,6 +175,7 @@ def test_every_key_arrives(tmp_path: Path) -> None:
     assert (travel.detour.time_at_1km_min, travel.detour.time_exponent) == (2.0, 0.8)
     assert (travel.detour.low_factor, travel.detour.high_factor) == (0.8, 1.25)
     assert (programme.seed, programme.effort.name, programme.effort.seconds) == (7, "quick", 2.5)
+    assert programme.aim is Aim.FEWEST_DAYS
 
 
 def test_holidays_are_those_of_the_country_and_its_part(tmp_path: Path) -> None:

@@ -15,7 +15,7 @@ from georoute.problem import Problem
 __all__ = ["Objective", "best_plan", "loss_of"]
 
 Objective = tuple[tuple[int, ...], int]
-"""What is left out, gravest class first; then micro-units of money."""
+"""What is left out, gravest class first, and the tours if they count; then micro-units of money."""
 FAR = 1 << 60
 
 
@@ -126,21 +126,28 @@ class _Orders:
             self.cheapest[tour.mask] = cost
 
 
-def best_plan(problem: Problem) -> Objective:
-    """Return loss and money of the best plan over all days, all orders and all that is left out."""
+def best_plan(problem: Problem, *, fewest_days: bool = False) -> Objective:
+    """Return loss and money of the best plan over all days, all orders and all that is left out.
+
+    With ``fewest_days`` the number of tours stands behind the loss.
+    """
     count = problem.visit_count
-    totals: dict[int, int] = {0: 0}
+    totals: dict[int, tuple[int, int]] = {0: (0, 0)}
     for s in range(problem.shift_count):
         cheapest = _Orders(problem, s).cheapest
-        after: dict[int, int] = {}
-        for placed, money in totals.items():
+        after: dict[int, tuple[int, int]] = {}
+        for placed, (days, money) in totals.items():
             for mask, more in cheapest.items():
                 if not placed & mask:
-                    both, sum_of = placed | mask, money + more
-                    if sum_of < after.get(both, FAR):
-                        after[both] = sum_of
+                    both = placed | mask
+                    sums = (days + (fewest_days and mask > 0), money + more)
+                    after[both] = min(sums, after.get(both, sums))
         totals = after
     return min(
-        (loss_of(problem, {v for v in range(count) if not placed >> v & 1}), money)
-        for placed, money in totals.items()
+        (
+            loss_of(problem, {v for v in range(count) if not placed >> v & 1})
+            + ((days,) if fewest_days else ()),
+            money,
+        )
+        for placed, (days, money) in totals.items()
     )

@@ -278,7 +278,9 @@ def draw_files(seed: int, folder: Path, *, effort: str) -> Drawn:
         lines += ["", "[[base]]", f'base_id = "{name}"', f"lat = {lat}", f"lon = {lon}"]
     lines += [*_inspectors(dice, frame), *_tariff(dice), *_travel(dice, method)]
     lines += ["", "[work]", f"work_min = {dice.pick((0.0, 12.5, 30.0))}"]
-    lines += ["", "[search]", f"seed = {dice.whole(0, 2**40)}", f'effort = "{effort}"', ""]
+    lines += ["", "[search]", f"seed = {dice.whole(0, 2**40)}", f'effort = "{effort}"']
+    lines += ['aim = "fewest_days"'] if dice.chance(0.25) else []
+    lines += [""]
     folder.mkdir(parents=True, exist_ok=True)
     programme = folder / "programme.toml"
     programme.write_text("\n".join(lines), encoding="utf-8")

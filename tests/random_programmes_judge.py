@@ -11,6 +11,7 @@ import georoute
 from georoute.audit import audit
 from georoute.domain.plan import Plan
 from georoute.domain.programme import Programme
+from georoute.domain.run import Aim
 from georoute.domain.sites import Register
 from georoute.errors import AuditError
 from georoute.pipeline import prepare
@@ -54,12 +55,17 @@ def objective_of(plan: Plan, problem: Problem) -> Objective:
     """Return what a plan leaves out and costs."""
     left_out = {entry.visit_id for entry in plan.unplaced}
     indices = {v for v, visit in enumerate(plan.visits) if visit.visit_id in left_out}
-    return loss_of(problem, indices), sum(round(tour.cost * MICRO) for tour in plan.tours)
+    days = (len(plan.tours),) if plan.programme.aim is Aim.FEWEST_DAYS else ()
+    money = sum(round(tour.cost * MICRO) for tour in plan.tours)
+    return loss_of(problem, indices) + days, money
 
 
 def _beside_brute(plan: Plan, programme: Programme, register: Register) -> tuple[str, str]:
     problem = prepare(programme, register).packed.problem
-    own, best = objective_of(plan, problem), best_plan(problem)
+    own, best = (
+        objective_of(plan, problem),
+        best_plan(problem, fewest_days=programme.aim is Aim.FEWEST_DAYS),
+    )
     slack = ROUNDING * problem.shift_count
     if own[0] == best[0] and abs(own[1] - best[1]) <= slack:
         return EQUAL, ""

@@ -25,6 +25,8 @@ _DIGIT = 1.05
 """Share of the rule (per cent) that a digit takes; a narrower block wears its number above."""
 _LABEL_ROOM = 2.2
 """Room for the number of a bracket (per cent), so that brackets in one lane do not touch."""
+_MOST_HOURS = 14
+"""Longer days tell every second hour, or fewer."""
 _SLACK_ROOM = 9.0
 """Slack narrower than this (per cent) has no words in it."""
 
@@ -115,23 +117,33 @@ def time_axis(first: datetime, last: datetime, figures: Figures) -> tuple[dateti
 def _ticks(start: datetime, end: datetime, axis: _Axis, figures: Figures) -> tuple[Tick, ...]:
     ticks = []
     quarters = round((end - start).total_seconds() / (_HOUR_S / 4))
+    hours = quarters / 4
+    step = next((step for step in (1, 2, 3, 4, 6, 12) if hours / step <= _MOST_HOURS), 24)
     for quarter in range(quarters + 1):
         moment = start + timedelta(minutes=15 * quarter)
         whole = quarter % 4 == 0
-        text = f"{moment.astimezone(figures.zone):%H:%M}" if whole else ""
+        told = whole and quarter % (4 * step) == 0
+        text = f"{moment.astimezone(figures.zone):%H:%M}" if told else ""
         ticks.append(Tick(axis.at(moment), text))
     return tuple(ticks)
 
 
 def _blocks(tour: DayTour, states: Sequence[str], axis: _Axis) -> tuple[Block, ...]:
     blocks = []
+    taken = 0.0
     for stop, state in zip(tour.stops, states, strict=True):
         if stop.wait_s > 0:
             blocks.append(Block("wait", *axis.span(stop.arrive, stop.start)))
         x, width = axis.span(stop.start, stop.leave)
         kind = "late" if state == "late" else "work"
         text = str(stop.order)
-        blocks.append(Block(kind, x, width, text, width < _DIGIT * len(text)))
+        room = _DIGIT * len(text)
+        above = width < room
+        if above and x + width / 2 - room / 2 < taken:
+            text = ""  # no room beside the number before it; the run list has them all
+        elif above:
+            taken = x + width / 2 + room / 2
+        blocks.append(Block(kind, x, width, text, above))
     if tour.write_up_s > 0:
         blocks.append(Block("write_up", *axis.span(tour.back, tour.finish)))
     return tuple(blocks)

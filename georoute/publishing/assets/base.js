@@ -70,5 +70,10 @@ function foldOnPhone() {
   for (const part of document.querySelectorAll("details.fold-on-phone")) part.open = false;
 }
 
+// Paper has no folds.
+window.addEventListener("beforeprint", () => {
+  for (const part of document.querySelectorAll("details.fold-on-phone")) part.open = true;
+});
+
 startThemes();
 foldOnPhone();

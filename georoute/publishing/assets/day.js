@@ -60,7 +60,8 @@ function drawDay(map) {
   sheet.labels.append(...labels);
   sheet.refresh();
 
-  function show(number, { focusPlate = false, focusRow = false, zoom = isPhone() } = {}) {
+  function show(number, given = {}) {
+    const { focusPlate = false, focusRow = false, scroll = focusRow, zoom = isPhone() } = given;
     state.current = number;
     for (const row of document.querySelectorAll("[data-stop]")) {
       const here = Number(row.dataset.stop) === number;
@@ -75,7 +76,7 @@ function drawDay(map) {
     const row = document.getElementById(`stop-${number}`);
     if (focusPlate) labels[tour.bases.length + number - 1].focus({ preventScroll: true });
     if (focusRow) row.querySelector("button").focus({ preventScroll: true });
-    if (focusRow || isPhone()) {
+    if (scroll || isPhone()) {
       // on a phone the drive to the stop comes first
       if (isPhone()) row.previousElementSibling.scrollIntoView({ block: "start" });
       else row.scrollIntoView({ block: "nearest" });
@@ -131,7 +132,7 @@ function openOnNextStop(tour, show) {
   const row = document.getElementById(`stop-${next.number}`);
   row.classList.add("next-stop");
   row.querySelector(".row-head").after(html("p", "next-mark", words.map_next_stop));
-  if (isPhone() || next.number > 1) show(next.number);
+  if (isPhone() || next.number > 1) show(next.number, { scroll: true });
 }
 
 function paintDay(sheet, map, places, labels, state) {

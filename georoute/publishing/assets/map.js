@@ -58,7 +58,7 @@ function drawGrid(map, group) {
     const b = map.latLngToLayerPoint([k * step, high.lng]);
     group.append(svg("line", { x1: a.x, y1: a.y, x2: b.x, y2: b.y }));
     const at = a.y - corner.y;
-    if (at < 24 || at > size.y - 40) continue;
+    if (at < 70 || at > size.y - 40) continue; // under the arrow of north
     const place = { x: corner.x + size.x - 4, y: a.y - 3, "text-anchor": "end" };
     group.append(svg("text", place, degrees(k * step, step, false)));
   }

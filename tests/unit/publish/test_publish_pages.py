@@ -150,8 +150,9 @@ def test_pages_are_small_and_carry_the_caution(tmp_path: Path) -> None:
     )
     for plan in plans:
         for page in publish(plan, tmp_path):
-            # roads and their names are to come: 48 kB and 5 kB
-            assert page.stat().st_size <= 300_000
+            # 300 kB at most, of which roads and their names will want their part
+            most = 290_000 if page.name == "index.html" else 265_000
+            assert page.stat().st_size <= most
             text = " ".join("".join(Reader(page.read_text("utf-8")).words).split())
             assert "Local law, your employer's rules and licensed practice prevail." in text
             assert "Read or change the plan only while parked." in text

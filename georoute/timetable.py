@@ -9,7 +9,7 @@ import numpy as np
 
 from georoute.domain.instants import later
 from georoute.domain.plan import DayTour, Leg, Stop
-from georoute.kernels.arrays import leg_mm, leg_ms
+from georoute.kernels.arrays import UNREACHABLE, leg_mm, leg_ms
 from georoute.kernels.clock import clock_tour, latest_arrivals, time_tour, tour_cost
 from georoute.problem import MICRO
 
@@ -23,7 +23,7 @@ if TYPE_CHECKING:
     from georoute.kernels.clock import TourTimes
     from georoute.problem import Packed, Problem, Solution
 
-__all__ = ["is_feasible", "order_cost", "solution_cost", "tours_of"]
+__all__ = ["is_feasible", "order_cost", "passable", "solution_cost", "tours_of"]
 
 
 def order_cost(problem: Problem, shift: int, order: NDArray[np.int64]) -> int:
@@ -44,6 +44,23 @@ def is_feasible(problem: Problem, shift: int, order: NDArray[np.int64]) -> bool:
     times = time_tour(problem.travel, problem.visits, problem.shifts, shift, order)
     allowed = bool(problem.visits.eligible[order, shift].all())
     return allowed and times.late_ms == 0 and times.excess_ms == 0 and times.over_load == 0
+
+
+def passable(problem: Problem, shift: int, order: NDArray[np.int64]) -> NDArray[np.int64]:
+    """Return an order without the visits that no way leads to from the stop before them.
+
+    Nor those at its end from where no way leads to the end of the tour.
+    """
+    travel, place = problem.travel, problem.visits.place
+    here, end = int(problem.shifts.start_place[shift]), int(problem.shifts.end_place[shift])
+    kept: list[int] = []
+    for v in order.tolist():
+        if leg_ms(travel, here, place[v]) < UNREACHABLE:
+            kept.append(v)
+            here = int(place[v])
+    while kept and leg_ms(travel, place[kept[-1]], end) >= UNREACHABLE:
+        kept.pop()
+    return np.array(kept, np.int64)
 
 
 def _clock(packed: Packed) -> Callable[[Int], datetime]:

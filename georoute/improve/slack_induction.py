@@ -26,6 +26,8 @@ __all__ = ["ImproveResult", "improve"]
 HOT = 1.0
 COLD = 0.01
 """Temperatures at the start and at the end, as multiples of the mean leg."""
+LEAST_VISITS = 50
+"""A smaller register is searched as long as one of so many visits: it costs next to nothing."""
 CHUNK_S = 0.04
 """Seconds between two looks at the caller's wishes."""
 FIRST_CHUNK = 50
@@ -93,10 +95,9 @@ def improve(  # noqa: PLR0913 - a budget is several plain values
     """Improve all days together, from any feasible solution, never to a worse one.
 
     What is left out comes first, by rank and then by worth; then, with ``fewest_days``, the
-    number of tours; then money decides. The search does
-    ``effort.improve_steps`` steps per visit and is the same on every run; with ``share_spent``,
-    which tells the share, 0 to 1, of a budget in time that is used, it cools and ends by that
-    instead. ``should_stop`` ends it at once with the best so far.
+    number of tours; then money decides. The search does ``effort.improve_steps`` steps per visit
+    and is the same on every run; with ``share_spent``, which tells the share, 0 to 1, of a budget
+    in time that is used, it cools and ends by that instead. ``should_stop`` ends it at once with the best so far.
 
     J. Christiaens, G. Vanden Berghe, "Slack induction by string removals for vehicle routing
     problems", Transportation Science 54 (2020) 417-433.
@@ -104,7 +105,8 @@ def improve(  # noqa: PLR0913 - a budget is several plain values
     if problem.visit_count == 0 or problem.shift_count == 0:
         return ImproveResult(solution=solution, steps=0)
     state = SearchState(problem, solution, seed)
-    schedule = _Schedule(effort.improve_steps * problem.visit_count, share_spent)
+    visits = max(problem.visit_count, LEAST_VISITS)
+    schedule = _Schedule(effort.improve_steps * visits, share_spent)
     days = FewestDays(problem, state) if fewest_days else None
     state.step(1, 0.0)
     hot = HOT * state.mean_leg

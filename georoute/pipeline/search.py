@@ -13,7 +13,7 @@ from georoute.pipeline.exchange_log import ExchangeLog
 from georoute.problem import MICRO, Solution
 from georoute.sequence import sequence_tour
 from georoute.split import split
-from georoute.timetable import solution_cost
+from georoute.timetable import passable, solution_cost
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -56,9 +56,20 @@ class _Search:
     def solution(self) -> Solution:
         return Solution(orders=tuple(self.orders))
 
+    @property
+    def cost(self) -> float:
+        """Money of all tours, without the visits that no way leads to yet."""
+        return solution_cost(self.problem, self._passable) / MICRO
+
+    @property
+    def _passable(self) -> Solution:
+        return Solution(
+            orders=tuple(passable(self.problem, s, order) for s, order in enumerate(self.orders))
+        )
+
     def note(self, stage: str) -> None:
-        placed = sum(order.shape[0] for order in self.orders)
-        self.stages.append((stage, solution_cost(self.problem, self.solution) / MICRO, placed))
+        placed = sum(order.shape[0] for order in self._passable.orders)
+        self.stages.append((stage, self.cost, placed))
 
     def split(self) -> None:
         self.progress("split", fraction=0.0)
@@ -71,10 +82,12 @@ class _Search:
         """Put the stops of each of ``shifts`` in the best order found."""
         busy = [s for s in shifts if self.orders[s].shape[0] > 0]
         for done, shift in enumerate(busy):
+            if budget():
+                break
             self.progress(
                 "order",
                 fraction=done / len(busy),
-                cost=solution_cost(self.problem, self.solution) / MICRO,
+                cost=self.cost,
             )
             found = sequence_tour(
                 self.problem,
@@ -104,6 +117,8 @@ class _Search:
 
     def together(self, *, budget: Budget) -> list[int]:
         """Improve all days together; return the shifts whose visits changed."""
+        if budget():
+            return []
         found = improve(
             self.problem,
             self.solution,

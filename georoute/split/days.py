@@ -8,7 +8,6 @@ import numpy as np
 from scipy.sparse import coo_array
 from scipy.sparse.csgraph import connected_components
 
-from georoute.kernels.arrays import UNREACHABLE
 from georoute.kernels.first_order import nearest_first
 from georoute.problem import Solution
 from georoute.problem.reasons import fits_alone
@@ -50,36 +49,17 @@ def _groups(suitable: NDArray[np.bool_]) -> Iterator[tuple[NDArray[np.int64], ND
             yield visits, shifts
 
 
-def _passable(problem: Problem, s: int, order: NDArray[np.int64]) -> NDArray[np.int64]:
-    """Return the order without the visits that no way leads to, or none from there to the end."""
-    travel, shifts = problem.travel, problem.shifts
-    if not travel.dense or not (travel.time_ms >= UNREACHABLE).any():
-        return order
-    kept = []
-    here, end = int(shifts.start_place[s]), int(shifts.end_place[s])
-    for v in order.tolist():
-        there = int(problem.visits.place[v])
-        if max(travel.time_ms[here, there], travel.time_ms[there, end]) < UNREACHABLE:
-            kept.append(v)
-            here = there
-    return np.array(kept, np.int64)
-
-
 def _orders(problem: Problem, shift_of: NDArray[np.int64]) -> Solution:
     by_shift = np.argsort(shift_of, kind="stable").astype(np.int64)
     bounds = np.searchsorted(shift_of[by_shift], np.arange(problem.shift_count + 1))
     starts = problem.shifts.start_place
     return Solution(
         orders=tuple(
-            _passable(
-                problem,
-                s,
-                nearest_first(
-                    problem.travel,
-                    problem.visits.place,
-                    starts[s],
-                    by_shift[bounds[s] : bounds[s + 1]],
-                ),
+            nearest_first(
+                problem.travel,
+                problem.visits.place,
+                starts[s],
+                by_shift[bounds[s] : bounds[s + 1]],
             )
             for s in range(problem.shift_count)
         )
@@ -103,9 +83,8 @@ def split(problem: Problem, *, seed: int) -> Solution:
     Returns
     -------
     Solution
-        Every visit that is eligible for some shift is in exactly one order, unless no way leads
-        there from the stop before, or to the end of the tour. Limits of shifts may be exceeded;
-        eligibility is not.
+        Every visit that is eligible for some shift is in exactly one order. Limits of shifts
+        may be exceeded; eligibility is not.
     """
     shift_of = np.full(problem.visit_count, -1, np.int64)
     if problem.shift_count > 0 and problem.visit_count > 0:

@@ -1,13 +1,13 @@
-"""``python -m tests.benchmarks SET …`` or ``python -m tests.benchmarks speed …``."""
+"""``python -m tests.benchmarks SET …``, or ``speed …`` or ``interrupt …`` in place of a set."""
 
 from __future__ import annotations
 
 import sys
 
-from tests.benchmarks import runner, speed
+from tests.benchmarks import interrupt, runner, speed
+
+OTHERS = {"speed": speed.main, "interrupt": interrupt.main}
 
 if __name__ == "__main__":
-    arguments = sys.argv[1:]
-    if arguments[:1] == ["speed"]:
-        sys.exit(speed.main(arguments[1:]))
-    sys.exit(runner.main(arguments))
+    name, *rest = sys.argv[1:] or [""]
+    sys.exit(OTHERS[name](rest) if name in OTHERS else runner.main(sys.argv[1:]))

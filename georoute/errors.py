@@ -6,6 +6,7 @@
     ├── InputError          what the user handed in cannot be used
     │   ├── RegisterError   the register has faults (``findings`` lists them all)
     │   ├── ProgrammeError  programme.toml has faults (``findings`` lists them all)
+    │   ├── RoadError       a source of roads cannot be used (``findings`` where there are several)
     │   └── TableError      the user's own travel table has faults (``findings``)
     ├── PlanError           a plan is not what it claims to be
     │   ├── AuditError      the finished plan failed its own check (``findings``)
@@ -33,6 +34,7 @@ __all__ = [
     "PlanFileError",
     "ProgrammeError",
     "RegisterError",
+    "RoadError",
     "TableError",
 ]
 
@@ -55,6 +57,10 @@ class RegisterError(InputError):
 
 class ProgrammeError(InputError):
     """The programme file has faults; ``findings`` lists all of them."""
+
+
+class RoadError(InputError):
+    """A source of roads cannot be used: damaged, the wrong file, elsewhere, or without roads."""
 
 
 class TableError(InputError):

@@ -142,8 +142,12 @@ FAULTS: list[tuple[str, str, str, str]] = [
         )
     ),
     ("unknown_travel_method", "travel.method", 'method = "detour"', 'method = "detuor"'),
-    ("unknown_travel_method", "travel.method", 'method = "detour"', 'method = "roads"'),
+    ("unknown_travel_method", "travel.method", 'method = "detour"', 'method = "streets"'),
     ("unknown_travel_method", "travel.method", 'method = "detour"', 'method = "Detour"'),
+    *(
+        ("missing_roads", "travel.roads.path", 'method = "detour"', f'method = "roads"{more}')
+        for more in ("", "\nspeed_kmh = 9", "\n[travel.roads]\ncountry = 'CL'")
+    ),
     ("missing_table", "travel.table", 'method = "detour"', 'method = "table"'),
     ("missing_table", "travel.table", 'method = "detour"', "method = 'table'"),
     ("missing_table", "travel.table", 'method = "detour"', 'method = "table"\nspeed_kmh = 9'),

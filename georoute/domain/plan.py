@@ -21,6 +21,7 @@ __all__ = [
     "Plan",
     "Provenance",
     "ReasonCode",
+    "RoadPoint",
     "StageCost",
     "Stop",
     "StopRule",
@@ -81,7 +82,9 @@ class Stop:
 class Leg:
     """Travel from one place to the next; ``order`` counts from 1 (leg k ends at stop k).
 
-    Ids are those of bases and sites. Without road geometry a leg is a straight line.
+    Ids are those of bases and sites. ``path`` holds the (latitude, longitude) of a leg along
+    roads, both ends included, and ``roads`` the name and the metres of each road in the order
+    driven; without them a leg is a straight line. ``ferry``: part of it is by ship.
     """
 
     from_id: str
@@ -91,6 +94,27 @@ class Leg:
     arrive: datetime
     drive_s: float
     dist_m: float
+    path: tuple[tuple[float, float], ...] = ()
+    roads: tuple[tuple[str, float], ...] = ()
+    ferry: bool = False
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class RoadPoint:
+    """Where a base or a site meets the road: driving ends here, ``distance_m`` from the place.
+
+    ``edge`` and ``along_m`` say where on the network that is; ``skipped`` tells of a nearer road
+    that was not taken, and why.
+    """
+
+    place_id: str
+    lat_deg: float
+    lon_deg: float
+    distance_m: float
+    road: str
+    edge: int
+    along_m: float
+    skipped: str = ""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -232,6 +256,7 @@ class Plan:
     exchanges: tuple[Exchange, ...]
     provenance: Provenance
     extra_columns: tuple[str, ...] = ()
+    road_points: tuple[RoadPoint, ...] = ()
 
     @property
     def cost(self) -> float:

@@ -18,6 +18,7 @@ __all__ = [
     "DetourModel",
     "Programme",
     "RegisterSource",
+    "RoadSettings",
     "TravelMethod",
     "TravelSettings",
 ]
@@ -30,6 +31,7 @@ class TravelMethod(StrEnum):
     GREAT_CIRCLE = "great_circle"
     DETOUR = "detour"
     TABLE = "table"
+    ROADS = "roads"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -50,11 +52,34 @@ class DetourModel:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class RoadSettings:
+    """Where the roads come from, and how fast they are driven.
+
+    ``path``: an OpenStreetMap extract or a table of edges. ``country`` (ISO 3166-1) chooses the
+    speeds of roads without a limit; ``speeds_kmh`` replaces them by class of road.
+    ``time_factor``: real driving time as a multiple of the time at these speeds.
+    ``snap_limit_m``: a place farther than this from every road is a fault. The size of the
+    vehicle, where it is given, closes roads whose limits it breaks. ``columns`` maps the columns
+    of a table of edges.
+    """
+
+    path: str
+    country: str = ""
+    speeds_kmh: Mapping[str, float] = field(default_factory=lambda: MappingProxyType({}))
+    time_factor: float = 1.0
+    snap_limit_m: float = 500.0
+    vehicle_height_m: float | None = None
+    vehicle_width_m: float | None = None
+    vehicle_weight_t: float | None = None
+    columns: Mapping[str, str] = field(default_factory=lambda: MappingProxyType({}))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class TravelSettings:
     """The travel method and its coefficients.
 
     ``speed_kmh`` and ``circuity`` serve the straight-line methods (length = circuity x straight
-    line). ``table_path`` is the user's own table.
+    line). ``table_path`` is the user's own table; ``roads`` are those of the method ``roads``.
     """
 
     method: TravelMethod
@@ -62,6 +87,7 @@ class TravelSettings:
     circuity: float
     detour: DetourModel
     table_path: str | None = None
+    roads: RoadSettings | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -97,7 +97,8 @@ def improve(  # noqa: PLR0913 - a budget is several plain values
     What is left out comes first, by rank and then by worth; then, with ``fewest_days``, the
     number of tours; then money decides. The search does ``effort.improve_steps`` steps per visit
     and is the same on every run; with ``share_spent``, which tells the share, 0 to 1, of a budget
-    in time that is used, it cools and ends by that instead. ``should_stop`` ends it at once with the best so far.
+    in time that is used, it cools and ends by that instead. ``should_stop`` ends it at once with
+    the best so far.
 
     J. Christiaens, G. Vanden Berghe, "Slack induction by string removals for vehicle routing
     problems", Transportation Science 54 (2020) 417-433.

@@ -173,6 +173,14 @@ def _check_choices(parts: Parts, notebook: Notebook) -> None:
             at=("travel", "method"),
             value=parts.travel.method,
         )
+    by_road = parts.travel.method == TravelMethod.ROADS.value
+    if by_road and not parts.writes("travel", "roads", "path"):
+        notebook.add(
+            Code.MISSING_ROADS,
+            "the travel method is `roads` and no roads are named",
+            'add a section [travel.roads] with `path = "town.osm.pbf"`',
+            at=("travel", "roads", "path"),
+        )
     if parts.travel.method == TravelMethod.TABLE.value and not parts.writes("travel", "table"):
         notebook.add(
             Code.MISSING_TABLE,

@@ -68,7 +68,8 @@ def _written_inline(model: type[BaseModel]) -> bool:
 def _kind(field: FieldInfo) -> str:
     word = words_of(field).name
     if get_origin(field.annotation) is dict:
-        return "table of text"
+        number = any(form is float for form in dug(field.annotation))
+        return "table of numbers" if number else "table of text"
     if any(get_origin(form) is list for form in dug(field.annotation)):
         return "list of holidays" if _section_in(field) is not None else f"list of {word}s"
     return word

@@ -16,6 +16,7 @@ from georoute.domain.programme import (
     DetourModel,
     Programme,
     RegisterSource,
+    RoadSettings,
     TravelMethod,
     TravelSettings,
 )
@@ -236,6 +237,22 @@ def _travel(path: Path, section: TravelSection) -> TravelSettings:
         circuity=section.circuity,
         detour=DetourModel(**section.detour.model_dump()),
         table_path=None if section.table is None else _beside(path, section.table),
+        roads=None if section.roads.path is None else _roads(path, section.roads.path, section),
+    )
+
+
+def _roads(folder: Path, path: str, section: TravelSection) -> RoadSettings:
+    roads = section.roads
+    return RoadSettings(
+        path=_beside(folder, path),
+        country=roads.country.upper(),
+        speeds_kmh=MappingProxyType(dict(roads.speeds)),
+        time_factor=roads.time_factor,
+        snap_limit_m=roads.snap_limit_m,
+        vehicle_height_m=roads.vehicle_height_m,
+        vehicle_width_m=roads.vehicle_width_m,
+        vehicle_weight_t=roads.vehicle_weight_t,
+        columns=MappingProxyType(dict(roads.columns)),
     )
 
 

@@ -26,6 +26,7 @@ __all__ = [
     "InspectorSection",
     "ProgrammeFile",
     "RegisterSection",
+    "RoadsSection",
     "SearchSection",
     "Section",
     "ShiftKeys",
@@ -292,6 +293,39 @@ class DetourSection(Section):
     )
 
 
+_Size = Annotated[float, Field(gt=0), Words("number", "3.2")]
+
+
+class RoadsSection(Section):
+    """Where the roads come from, and how fast they are driven."""
+
+    path: PathText | None = Field(
+        default=None,
+        description="OpenStreetMap extract (`.osm.pbf`, `.osm`, `.osm.bz2`), saved network "
+        "(`.graphml`) or table of edges, seen from the programme file.",
+    )
+    country: Text = Field(
+        default="",
+        description="Country whose speeds hold where the map has no limit (ISO 3166-1 code, `CL`).",
+    )
+    time_factor: Number = _coefficient(
+        1.0, "Real driving time as a multiple of the time at the limits."
+    )
+    snap_limit_m: Number = Field(
+        default=500.0, gt=0.0, description="A site farther than this from every road is a fault."
+    )
+    vehicle_height_m: _Size | None = Field(default=None, description="Height of the vehicle.")
+    vehicle_width_m: _Size | None = Field(default=None, description="Width of the vehicle.")
+    vehicle_weight_t: _Size | None = Field(default=None, description="Weight of the vehicle.")
+    speeds: dict[str, Number] = Field(
+        default_factory=dict, description="Speeds by class of road, km/h: `residential = 30`."
+    )
+    columns: dict[str, Text] = Field(
+        default_factory=dict,
+        description="Columns of a table of edges: `column of georoute = header of the file`.",
+    )
+
+
 class TravelSection(Section):
     """How travel between places is measured."""
 
@@ -310,6 +344,7 @@ class TravelSection(Section):
         description="Your own travel table, for `table`, seen from the programme file.",
     )
     detour: DetourSection = Field(default_factory=DetourSection, description="For `detour`.")
+    roads: RoadsSection = Field(default_factory=RoadsSection, description="For `roads`.")
 
 
 class SearchSection(Section):

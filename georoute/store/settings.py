@@ -88,6 +88,12 @@ def _read_mapping(texts: Texts, key: str, hint: object) -> Mapping[str, object]:
     )
 
 
+def _optional_settings(hint: object) -> type | None:
+    """Return the dataclass of a field that is one or ``None``."""
+    kinds = [kind for kind in get_args(hint) if is_dataclass(kind)]
+    return kinds[0] if kinds and NoneType in get_args(hint) else None  # type: ignore[return-value]  # a hint is a class
+
+
 def read_settings(kind: type, texts: Texts, *, prefix: str, **given: object) -> Any:  # noqa: ANN401 - the class is ``kind``
     """Return the dataclass whose fields ``write_settings`` wrote; ``given`` are the others.
 
@@ -107,6 +113,9 @@ def read_settings(kind: type, texts: Texts, *, prefix: str, **given: object) -> 
         hint = hints[item.name]
         if is_dataclass(hint):
             values[item.name] = read_settings(hint, texts, prefix=key)  # type: ignore[arg-type]  # a hint is a class
+        elif (inner := _optional_settings(hint)) is not None:
+            given_here = any(name.startswith(f"{key}.") for name in texts)
+            values[item.name] = read_settings(inner, texts, prefix=key) if given_here else None
         elif get_origin(hint) is Mapping:
             values[item.name] = _read_mapping(texts, key, hint)
         elif key in texts:

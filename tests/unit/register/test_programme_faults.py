@@ -55,7 +55,9 @@ def test_planted_faults_are_found_and_nothing_else(
     assert all(f.remedy and f.file.endswith("programme.toml") for f in findings)
     finding = findings[0]
     assert finding.severity is CODE_MEANINGS[Code(code)][0]
-    if code == "missing_table" or new == "#":
+    if code == "missing_roads":
+        assert text.splitlines()[(finding.row or 0) - 1].startswith("[travel")
+    elif code == "missing_table" or new == "#":
         assert finding.row == head_of(text, key.rpartition(".")[0])
     else:
         assert finding.row in lines_of(text, key)
@@ -75,7 +77,7 @@ def test_all_faults_are_reported_at_once(tmp_path: Path) -> None:
         "overtime_limit_h = 1": "overtime = 1",
         'start_base = "north"': 'start_base = "nroth"',
         "hour = 20": "hour = -1",
-        'method = "detour"': 'method = "roads"',
+        'method = "detour"': 'method = "streets"',
         "seed = 7": "seed = 7.5",
         'effort = "normal"': 'effort = "best"',
     }

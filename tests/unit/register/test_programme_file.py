@@ -9,7 +9,7 @@ from pathlib import Path
 import holidays
 import pytest
 
-from georoute.domain.programme import Programme, TravelMethod
+from georoute.domain.programme import Programme, RoadSettings, TravelMethod
 from georoute.domain.run import EFFORTS, Aim
 from georoute.register import check_programme, programme_fields, read_programme
 from georoute.register.schema import DEFAULT_DETOUR
@@ -109,6 +109,18 @@ time_exponent = 0.8
 low_factor = 0.8
 high_factor = 1.25
 
+[travel.roads]
+path = "town.osm.pbf"
+country = "cl"
+time_factor = 1.2
+snap_limit_m = 250.0
+vehicle_height_m = 2.9
+vehicle_width_m = 2.1
+vehicle_weight_t = 3.5
+
+[travel.roads.speeds]
+residential = 30.0
+
 [search]
 aim = "fewest_days"
 seed = 7
@@ -171,6 +183,16 @@ def test_every_key_arrives(tmp_path: Path) -> None:
     assert (tariff.overtime_hour, tariff.day_opened) == (30.0, 10.0)
     assert (travel.method, travel.speed_kmh, travel.circuity) == (TravelMethod.TABLE, 40.0, 1.3)
     assert travel.table_path == str(tmp_path / "in/travel.csv")
+    assert travel.roads == RoadSettings(
+        path=str(tmp_path / "town.osm.pbf"),
+        country="CL",
+        speeds_kmh={"residential": 30.0},
+        time_factor=1.2,
+        snap_limit_m=250.0,
+        vehicle_height_m=2.9,
+        vehicle_width_m=2.1,
+        vehicle_weight_t=3.5,
+    )
     assert (travel.detour.length_at_1km, travel.detour.length_exponent) == (1.5, 0.95)
     assert (travel.detour.time_at_1km_min, travel.detour.time_exponent) == (2.0, 0.8)
     assert (travel.detour.low_factor, travel.detour.high_factor) == (0.8, 1.25)
@@ -229,8 +251,8 @@ def test_the_table_of_keys_is_whole() -> None:
     assert len({row.key for row in rows}) == len(rows)
     assert rows[0].key == "title"
     keys = {row.key.rpartition(" ")[2].rpartition(".")[2] for row in rows}
-    written = set(re.findall(r"^(\w+) = ", WHOLE, flags=re.MULTILINE)) | {"columns"}
-    assert written - {"site_id"} == keys
+    written = set(re.findall(r"^(\w+) = ", WHOLE, flags=re.MULTILINE)) | {"columns", "speeds"}
+    assert written - {"site_id", "residential"} == keys
     needed = {row.key for row in rows if row.default == "needed"}
     assert needed == {
         "zone",

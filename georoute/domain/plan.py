@@ -13,6 +13,8 @@ from georoute.domain.programme import Programme
 from georoute.domain.sites import Site, Visit
 
 __all__ = [
+    "BackdropKind",
+    "BackdropLine",
     "Bound",
     "Capacity",
     "DayTour",
@@ -103,8 +105,8 @@ class Leg:
 class RoadPoint:
     """Where a base or a site meets the road: driving ends here, ``distance_m`` from the place.
 
-    ``edge`` and ``along_m`` say where on the network that is; ``skipped`` tells of a nearer road
-    that was not taken, and why.
+    It lies ``offset_m`` from the start of stretch ``stretch`` of the network; ``skipped`` tells of
+    a nearer road that was not taken.
     """
 
     place_id: str
@@ -112,9 +114,32 @@ class RoadPoint:
     lon_deg: float
     distance_m: float
     road: str
-    edge: int
-    along_m: float
+    stretch: int
+    offset_m: float
     skipped: str = ""
+
+
+class BackdropKind(StrEnum):
+    """What a line around the tours is. ``WATER`` is closed: the rim of a lake or a river bed."""
+
+    MAIN = "main road"
+    MINOR = "minor road"
+    LOCAL = "local road"
+    FERRY = "ferry"
+    COAST = "coast"
+    WATER = "water"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class BackdropLine:
+    """A line to draw under the tours, with its name; ``path`` is (latitude, longitude).
+
+    On a coast the land lies to the left, as in OpenStreetMap.
+    """
+
+    kind: BackdropKind
+    name: str
+    path: tuple[tuple[float, float], ...]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -257,6 +282,7 @@ class Plan:
     provenance: Provenance
     extra_columns: tuple[str, ...] = ()
     road_points: tuple[RoadPoint, ...] = ()
+    backdrop: tuple[BackdropLine, ...] = ()
 
     @property
     def cost(self) -> float:

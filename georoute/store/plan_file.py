@@ -16,7 +16,7 @@ from georoute.files import atomic_path
 from georoute.store.geopackage import logs_beside, read_tables, write_sheets
 from georoute.store.migrations import migrated
 from georoute.store.rows import build
-from georoute.store.schema import EXTRA_COLUMNS, PLAN, TABLES
+from georoute.store.schema import BACKDROP, EXTRA_COLUMNS, PLAN, ROAD_POINTS, TABLES
 from georoute.store.settings import read_settings
 from georoute.store.sheets import sheets_of
 
@@ -80,6 +80,9 @@ def _plan(tables: Tables) -> Plan:
     values: dict[str, object] = {
         name: _objects(tables, name, zone) for name in ("visits", "unplaced", "stages", "exchanges")
     }
+    # Files of the first versions have no tables of roads.
+    for name in (ROAD_POINTS, BACKDROP):
+        values[name] = _objects(tables, name, zone) if name in tables else ()
     fields: dict[str, object] = {
         "plan_id": texts["plan_id"],
         "programme": _programme(tables, texts, zone),

@@ -12,13 +12,22 @@ from types import MappingProxyType
 from typing import TYPE_CHECKING
 
 from georoute.domain.people import Inspector
-from georoute.domain.plan import DayTour, Exchange, Leg, StageCost, Stop, Unplaced
+from georoute.domain.plan import (
+    BackdropLine,
+    DayTour,
+    Exchange,
+    Leg,
+    RoadPoint,
+    StageCost,
+    Stop,
+    Unplaced,
+)
 from georoute.domain.sites import Base, Site, Visit
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-__all__ = ["EXTRA_COLUMNS", "PLAN", "SCHEMA", "TABLES", "Table"]
+__all__ = ["BACKDROP", "EXTRA_COLUMNS", "PLAN", "ROAD_POINTS", "SCHEMA", "TABLES", "Table"]
 
 SCHEMA = 1
 """Schema number of the plan files this version writes."""
@@ -28,6 +37,14 @@ PLAN = "plan"
 
 EXTRA_COLUMNS = "extra_columns"
 """The table that names the register's own columns as they are in layer ``sites``."""
+
+
+ROAD_POINTS = "road_points"
+"""The layer of the points where places meet the road."""
+
+
+BACKDROP = "backdrop"
+"""The layer of what is drawn under the tours."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -81,7 +98,7 @@ TABLES: Mapping[str, Table] = MappingProxyType(
             Table(
                 name="legs",
                 kind=Leg,
-                description="Travel from place to place; straight lines, not along roads",
+                description="Travel from place to place: along roads, or straight lines",
                 geometry="MULTILINESTRING",
                 rename={"order": "leg_order"},
                 keys={"tour_no": int, "tour_id": str, "inspector_id": str, "day": date},
@@ -99,6 +116,18 @@ TABLES: Mapping[str, Table] = MappingProxyType(
                 kind=Base,
                 description="Places that inspectors leave from and come back to",
                 geometry="POINT",
+            ),
+            Table(
+                name=ROAD_POINTS,
+                kind=RoadPoint,
+                description="Where places meet the road; empty without roads",
+                geometry="POINT",
+            ),
+            Table(
+                name=BACKDROP,
+                kind=BackdropLine,
+                description="Roads, coast and water around the tours, for drawing only",
+                geometry="MULTILINESTRING",
             ),
             Table(
                 name="visits",

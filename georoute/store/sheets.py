@@ -9,13 +9,13 @@ from typing import TYPE_CHECKING
 from georoute.store.cells import Codec, codec_for
 from georoute.store.lines import Line, split_at_antimeridian
 from georoute.store.rows import columns_of, flatten
-from georoute.store.schema import EXTRA_COLUMNS, PLAN, SCHEMA, TABLES
+from georoute.store.schema import BACKDROP, EXTRA_COLUMNS, PLAN, ROAD_POINTS, SCHEMA, TABLES
 from georoute.store.settings import write_settings
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping, Sequence
 
-    from georoute.domain.plan import DayTour, Plan
+    from georoute.domain.plan import DayTour, Leg, Plan
     from georoute.domain.sites import Site
 
 __all__ = ["Sheet", "sheets_of"]
@@ -44,6 +44,11 @@ class Sheet:
     shapes: tuple[Shape | None, ...] = ()
 
 
+def _way(path: Sequence[tuple[float, float]]) -> Shape:
+    """Return the shape of a way given as (latitude, longitude)."""
+    return split_at_antimeridian(tuple((lon, lat) for lat, lon in path))
+
+
 class _Places:
     """Where every id is: (lon, lat) in degrees."""
 
@@ -54,6 +59,21 @@ class _Places:
     def point(self, place_id: str) -> Shape | None:
         spot = self._sites.get(place_id, self._bases.get(place_id))
         return None if spot is None else ((spot,),)
+
+    def leg(self, leg: Leg) -> Shape | None:
+        """Return the way of a leg along roads, or the straight line where none is known."""
+        if not leg.path:
+            return self.line((leg.from_id, leg.to_id))
+        return _way(leg.path)
+
+    def tour(self, tour: DayTour) -> Shape | None:
+        """Return the way of a whole tour."""
+        if not any(leg.path for leg in tour.legs):
+            return self.line(
+                (tour.start_base_id, *(s.site_id for s in tour.stops), tour.end_base_id)
+            )
+        shapes = [shape for shape in map(self.leg, tour.legs) if shape is not None]
+        return tuple(line for shape in shapes for line in shape)
 
     def line(self, place_ids: Iterable[str]) -> Shape | None:
         """Return the straight lines through places; those of unknown id are passed over."""
@@ -191,7 +211,7 @@ def _legs(plan: Plan, places: _Places) -> Sheet:
         "legs",
         [leg for _, leg in entries],
         keys=[key for key, _ in entries],
-        shapes=[places.line((leg.from_id, leg.to_id)) for _, leg in entries],
+        shapes=[places.leg(leg) for _, leg in entries],
     )
 
 
@@ -201,10 +221,7 @@ def _days(plan: Plan, places: _Places) -> Sheet:
         (people.get(t.inspector_id, ""), len(t.stops), t.duration_s, t.dist_m / KM_M)
         for t in plan.tours
     ]
-    shapes = [
-        places.line((t.start_base_id, *(s.site_id for s in t.stops), t.end_base_id))
-        for t in plan.tours
-    ]
+    shapes = [places.tour(tour) for tour in plan.tours]
     return _sheet("days", plan.tours, added=added, shapes=shapes)
 
 
@@ -263,6 +280,12 @@ def sheets_of(plan: Plan) -> tuple[Sheet, ...]:
         _legs(plan, places),
         _days(plan, places),
         _sheet("bases", bases, shapes=[places.point(base.base_id) for base in bases]),
+        _sheet(
+            ROAD_POINTS,
+            plan.road_points,
+            shapes=[(((point.lon_deg, point.lat_deg),),) for point in plan.road_points],
+        ),
+        _sheet(BACKDROP, plan.backdrop, shapes=[_way(line.path) for line in plan.backdrop]),
         _visits(plan),
         _unplaced(plan),
         _sheet("inspectors", plan.programme.inspectors),

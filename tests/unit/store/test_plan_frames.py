@@ -19,7 +19,7 @@ from georoute.store.lines import split_at_antimeridian
 from tests.store_breaches import tour
 from tests.store_helpers import example_plan
 
-LAYERS = ("sites", "stops", "legs", "days", "bases")
+LAYERS = ("sites", "stops", "legs", "days", "bases", "road_points", "backdrop")
 
 
 @pytest.fixture(scope="module")
@@ -35,7 +35,7 @@ def frames(plan: Plan) -> dict[str, gpd.GeoDataFrame | pd.DataFrame]:
 def test_layers_have_shapes_and_tables_have_none(
     frames: dict[str, gpd.GeoDataFrame | pd.DataFrame],
 ) -> None:
-    assert list(frames)[:5] == list(LAYERS)
+    assert list(frames)[: len(LAYERS)] == list(LAYERS)
     for name, frame in frames.items():
         assert isinstance(frame, gpd.GeoDataFrame) == (name in LAYERS)
         if name in LAYERS:

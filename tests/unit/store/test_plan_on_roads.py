@@ -59,5 +59,6 @@ def test_their_shapes_are_those_of_the_roads(plan: Plan, tmp_path: Path) -> None
 def test_a_file_from_before_there_were_roads_still_opens() -> None:
     golden = Path(__file__).parents[2] / "data" / "plan_schema_1.gpkg"
     plan = read_plan(golden)
-    assert plan.road_points == plan.backdrop == ()
+    assert plan.road_points == ()
+    assert plan.backdrop == ()
     assert all(leg.path == () for tour in plan.tours for leg in tour.legs)

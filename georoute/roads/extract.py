@@ -107,7 +107,10 @@ def _no_roads(path: Path, raw: RawRoads, within: Box | None, tally: Tally) -> Ro
     left = ", ".join(f"{remark.count} {remark.text}" for remark in tally.remarks())
     if raw.way.size:
         found = f"{raw.way.size} ways for cars, and no two neighbouring nodes of any of them"
-        remedy = "give an extract that holds the nodes of its ways"
+        remedy = (
+            "give an extract that holds the nodes of its ways, with the positive ids of published "
+            "data (an editor's draft has negative ones)"
+        )
     else:
         found = left or "no way with the tag highway"
         remedy = "give an extract with roads"

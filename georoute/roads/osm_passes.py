@@ -44,10 +44,13 @@ LINES_AT_ONCE = 20_000
 LOCATIONS_IN_MEMORY_UP_TO = 1_500_000_000
 """Bytes of a file whose node locations are kept in memory; those of larger ones go to the disk."""
 
+_ENDS_EARLY = ("truncated", "eof", "end of", "unclosed token", "no element found")
 _NOWHERE = 999.0
 _TEXT_FORMAT = "opl,add_metadata=false,locations_on_ways=true"
 _TO_NUMBERS = str.maketrans("nxy,", "    ")
 _ESCAPE = re.compile("%([0-9a-f]+)%")
+_ON_FOOT = re.compile("(?:^|,)highway=(?:footway|path|steps|cycleway|bridleway)(?:,|$)")
+"""Most ways of a town: told from roads before their tags are taken apart."""
 
 
 class RawRestriction(NamedTuple):
@@ -94,13 +97,13 @@ class _Judge:
 
     def rule(self, parts: list[str]) -> int:
         """Return the number of the rule for a way's tags, each as ``key=value`` in OPL."""
-        telling = [part for part in parts if _plain(part.partition("=")[0]) in RELEVANT_KEYS]
-        key = ",".join(telling)
-        number = self._known.get(key)
+        telling = [part for part in parts if part.partition("=")[0] in RELEVANT_KEYS]
+        text = ",".join(telling)
+        number = self._known.get(text)
         if number is None:
             pairs = (part.partition("=") for part in telling)
-            tags = {_plain(k): _plain(v) for k, _, v in pairs}
-            number = self._known[key] = len(self.rules)
+            tags = {key: _plain(value) for key, _, value in pairs}
+            number = self._known[text] = len(self.rules)
             self.rules.append(judge_way(tags, profile=self.profile))
         return number
 
@@ -197,6 +200,9 @@ def _judged_lines(lines: Iterator[str], judge: _Judge, points: _Points) -> None:
         for line in chunk:
             head, _, nodes = line.rstrip("\n").rpartition(" N")
             number, _, tag_text = head.partition(" T")
+            if "motor" not in tag_text and _ON_FOOT.search(tag_text):
+                counted("way_not_for_cars", f"way {number[1:]}")
+                continue
             parts = tag_text.split(",")
             rule = judge.rule(parts)
             left_out = judge.rules[rule].left_out
@@ -219,7 +225,7 @@ def _read_restrictions(path: Path) -> list[RawRestriction]:
                 [(member.type, member.ref, member.role) for member in relation.members],
             )
             for relation in osmium.OsmFileIterator(reader, wanted)
-            if relation.is_relation()
+            if isinstance(relation, osmium.osm.Relation)
         ]
 
 
@@ -227,7 +233,9 @@ def _explain(path: Path, error: Exception) -> RoadError:
     """Return the error a person can act on."""
     found = str(error).strip() or type(error).__name__
     lowered = found.lower()
-    if "truncated" in lowered or "eof" in lowered or "end of" in lowered:
+    if not path.stat().st_size:
+        what, remedy = "the file is empty", "fetch it again"
+    elif any(word in lowered for word in _ENDS_EARLY):
         what, remedy = "the file ends too early", "fetch it again, whole"
     elif "detect file format" in lowered or "not supported" in lowered:
         what = "its name does not tell the format"

@@ -52,6 +52,7 @@ TEXTS: Mapping[str, str] = {
     "restriction_not_joined": "turn restrictions name ways that do not meet: not applied",
     "restriction_ambiguous": "turn restrictions can be read in two ways: not applied",
     "restriction_not_drivable": "turn restrictions name turns no car can make: no effect",
+    "source_without_turns": "sources of this kind hold no turn restrictions and no barriers",
     "row_incomplete": "rows lack an end, a shape or a number and were left out",
     "row_speed_missing": "rows have no usable speed; the speed of the class was taken",
 }

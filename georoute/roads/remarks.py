@@ -39,7 +39,8 @@ TEXTS: Mapping[str, str] = {
     "ferry_speed_assumed": "ferries tell no duration; 20 km/h was taken",
     "barrier_closed": "barriers close a road to cars; the road was split there",
     "barrier_local": "gates are for trips that begin or end there: no through traffic",
-    "barrier_on_junction": "closed barriers stand on a junction; all its roads were split there",
+    "closed_on_junction": "closed barriers stand on a junction; all its roads were split there",
+    "local_on_junction": "gates with limited access stand on a junction: passed over",
     "barrier_unknown": "barriers of an unknown kind were passed over",
     "restriction_read": "turn restrictions are obeyed",
     "restriction_conditional": "turn restrictions hold at some hours only: not applied",
@@ -51,6 +52,7 @@ TEXTS: Mapping[str, str] = {
     "restriction_not_joined": "turn restrictions name ways that do not meet: not applied",
     "restriction_ambiguous": "turn restrictions can be read in two ways: not applied",
     "restriction_not_drivable": "turn restrictions name turns no car can make: no effect",
+    "source_without_turns": "sources of this kind hold no turn restrictions and no barriers",
     "row_incomplete": "rows lack an end, a shape or a number and were left out",
     "row_speed_missing": "rows have no usable speed; the speed of the class was taken",
 }

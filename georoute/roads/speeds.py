@@ -253,7 +253,7 @@ class Limit(NamedTuple):
 
 
 _NUMBER = re.compile(r"(\d+(?:[.,]\d+)?)\s*(km/?h|kph|mph|knots?|kn)?", re.IGNORECASE)
-_ZONE = re.compile(r"(?:([A-Za-z]{2})(?:-\w+)?:)?([A-Za-z_]+)[:_]?(\d+)?", re.ASCII)
+_ZONE = re.compile(r"(?:([A-Za-z]{2})(?:-\w+)?:)?([A-Za-z_]*?)[:_]?(\d+)?", re.ASCII)
 _ZONE_FIELDS: Mapping[str, str] = {
     "urban": "urban",
     "rural": "rural",
@@ -308,9 +308,9 @@ def _read_zone(text: str, *, profile: SpeedProfile) -> Limit:
     zone = _ZONE.fullmatch(text)
     if not zone:
         return Limit(None, "speed_unread")
-    country, word = (zone[1] or profile.country).upper(), zone[2].lower().rstrip("_")
+    country, word = (zone[1] or profile.country).upper(), zone[2].lower()
     if zone[3]:
-        known = word in {"zone", "zona"} and SLOWEST_KMH <= float(zone[3]) <= FASTEST_KMH
+        known = word in {"", "zone", "zona"} and SLOWEST_KMH <= float(zone[3]) <= FASTEST_KMH
         return Limit(float(zone[3])) if known else Limit(None, "speed_unread")
     if word == "walk":
         return Limit(WALK_KMH)

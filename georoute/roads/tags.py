@@ -43,7 +43,7 @@ LOCAL_VALUES = frozenset(
         "discouraged", "emergency", "restricted", "use_sidepath", "psv", "bus",
     }
 )  # fmt: skip
-"""``no`` and ``private`` count among them: a first or last leg may need them, through traffic not."""
+"""``no`` and ``private`` count among them: a first or last leg may need them."""
 
 _SHUT_WITHOUT_LEAVE = frozenset(
     {"pedestrian", "busway", "footway", "path", "bridleway", "cycleway"}
@@ -52,11 +52,15 @@ _SHUT_WITHOUT_LEAVE = frozenset(
 
 _DRIVEN = frozenset(ROAD_CLASSES) - {"ferry"}
 _DIRECTIONS = ("forward", "backward")
-_LIMIT_KEYS = tuple(
-    key + suffix
-    for key in ("maxheight", "maxweight", "maxwidth")
-    for suffix in ("", ":physical")
-) + ("maxweightrating",)  # fmt: skip
+_LIMIT_KEYS = (
+    "maxheight",
+    "maxheight:physical",
+    "maxweight",
+    "maxweight:physical",
+    "maxweightrating",
+    "maxwidth",
+    "maxwidth:physical",
+)
 _CONDITIONAL = {
     **{f"{key}:conditional": "access_conditional" for key in ACCESS_KEYS},
     "oneway:conditional": "oneway_conditional",
@@ -167,7 +171,7 @@ def _directions(tags: Mapping[str, str]) -> tuple[bool, bool, str]:
 
 
 def _closed_directions(tags: Mapping[str, str]) -> tuple[bool, bool]:
-    """Tell of each direction whether access tags of its own shut it (``motor_vehicle:backward``)."""
+    """Tell whether ``motor_vehicle:forward=no`` and the like shut a direction."""
     shut = [
         any(
             tags.get(f"{key}:{direction}") in {"no", "private"}

@@ -45,7 +45,7 @@ def read_metres(text: str) -> float | None:
 
 
 def read_tonnes(text: str) -> float | None:
-    """Return a weight in tonnes: ``3.5``, ``3.5 t``, ``3500 kg``, ``10 st`` (short), ``8000 lbs``."""
+    """Return a weight in tonnes: ``3.5``, ``3.5 t``, ``3500 kg``, ``10 st`` (short tons)."""
     weight = _WEIGHT.fullmatch(text.strip().lower())
     if not weight or weight[2] not in _TONNES:
         return None

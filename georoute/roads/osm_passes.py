@@ -1,0 +1,318 @@
+"""The passes over an OpenStreetMap file: nodes, ways, turn restrictions; whatever their order.
+
+Every file is read by pyosmium. The ways of roads pass from it as lines of text, in the format OPL
+(https://osmcode.org/opl-file-format/): the tags of a way as objects of Python take about 50
+microseconds, as text about 3. Node locations lie in a sorted array of 16 bytes a node; a filter of
+wanted ids was measured to take gigabytes, as the ids of real nodes are scattered.
+"""
+
+from __future__ import annotations
+
+import re
+import tempfile
+from array import array
+from itertools import islice
+from pathlib import Path
+from typing import TYPE_CHECKING, Any, NamedTuple
+
+import numpy as np
+import osmium
+
+from georoute.errors import RoadError
+from georoute.roads.tags import (
+    RELEVANT_KEYS,
+    Barrier,
+    WayRule,
+    judge_barrier,
+    judge_way,
+)
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator
+
+    from numpy.typing import NDArray
+
+    from georoute.domain.run import Progress
+    from georoute.roads.box import Box
+    from georoute.roads.remarks import Tally
+    from georoute.roads.speeds import SpeedProfile
+
+__all__ = ["RawRestriction", "RawRoads", "read_passes"]
+
+STAGE = "roads"
+LINES_AT_ONCE = 20_000
+LOCATIONS_IN_MEMORY_UP_TO = 1_500_000_000
+"""Bytes of a file whose node locations are kept in memory; those of larger ones go to the disk."""
+
+_ENDS_EARLY = ("truncated", "eof", "end of", "unclosed token", "no element found")
+_NOWHERE = 999.0
+_TEXT_FORMAT = "opl,add_metadata=false,locations_on_ways=true"
+_TO_NUMBERS = str.maketrans("nxy,", "    ")
+_ESCAPE = re.compile("%([0-9a-f]+)%")
+_ON_FOOT = re.compile("(?:^|,)highway=(?:footway|path|steps|cycleway|bridleway)(?:,|$)")
+"""Most ways of a town: told from roads before their tags are taken apart."""
+
+
+class RawRestriction(NamedTuple):
+    """A relation of the type restriction: its id, tags, and members (type, id, role)."""
+
+    number: int
+    tags: dict[str, str]
+    members: list[tuple[str, int, str]]
+
+
+class RawRoads(NamedTuple):
+    """W ways of P points before they are cut into stretches.
+
+    ``way``: int64 (W,), ids. ``rule``: int64 (W,), index into ``rules``. ``name``: int32 (W,),
+    index into ``names``. ``ptr``: int64 (W + 1,), the points of each way. ``ref``: int64 (P,),
+    ids of nodes. ``lat``, ``lon``: float64 (P,), degrees, NaN where the file lacks the node.
+    ``barriers``: what stands on nodes, open ones left out. ``extent``: south, west, north, east
+    of all roads for cars in the file, degrees; NaN if there are none.
+    """
+
+    way: NDArray[np.int64]
+    rule: NDArray[np.int64]
+    name: NDArray[np.int32]
+    ptr: NDArray[np.int64]
+    ref: NDArray[np.int64]
+    lat: NDArray[np.float64]
+    lon: NDArray[np.float64]
+    rules: list[WayRule]
+    names: list[str]
+    barriers: dict[int, Barrier]
+    restrictions: list[RawRestriction]
+    extent: tuple[float, float, float, float]
+
+
+class _Judge:
+    """Judges ways; those with equal tags once. Names are numbered, 0 is no name."""
+
+    def __init__(self, profile: SpeedProfile, tally: Tally) -> None:
+        self.profile = profile
+        self.tally = tally
+        self.rules: list[WayRule] = []
+        self.names = {"": 0}
+        self._known: dict[str, int] = {}
+
+    def rule(self, parts: list[str]) -> int:
+        """Return the number of the rule for a way's tags, each as ``key=value`` in OPL."""
+        telling = [part for part in parts if part.partition("=")[0] in RELEVANT_KEYS]
+        text = ",".join(telling)
+        number = self._known.get(text)
+        if number is None:
+            pairs = (part.partition("=") for part in telling)
+            tags = {key: _plain(value) for key, _, value in pairs}
+            number = self._known[text] = len(self.rules)
+            self.rules.append(judge_way(tags, profile=self.profile))
+        return number
+
+    def name(self, parts: list[str]) -> int:
+        """Return the number of a way's name, or of its reference where it has none."""
+        found = ""
+        for part in parts:
+            if part.startswith("name="):
+                found = part[5:]
+                break
+            if part.startswith("ref="):
+                found = part[4:]
+        return self.names.setdefault(_plain(found), len(self.names))
+
+
+def _plain(text: str) -> str:
+    """Undo the escapes of OPL."""
+    if "%" not in text:
+        return text
+    return _ESCAPE.sub(lambda match: chr(int(match[1], 16)), text)
+
+
+class _Points:
+    """Collects the points of ways, chunk by chunk, and drops ways that miss the box."""
+
+    def __init__(self, within: Box | None) -> None:
+        self.within = within
+        self.extent = np.array([np.nan, np.nan, np.nan, np.nan])
+        self.ids: list[NDArray[np.int64]] = []
+        self.counts: list[NDArray[np.int64]] = []
+        self.rows: list[NDArray[np.float64]] = []
+
+    def add(self, heads: NDArray[np.int64], texts: list[str]) -> None:
+        """Take ways: (id, rule, name) each, and the nodes of each as OPL writes them."""
+        count = np.fromiter((text.count("n") for text in texts), np.int64, len(texts))
+        heads = heads[count > 0]
+        numbers = ",".join(text for text in texts if text)
+        # A node without a location reads "n1xy". Ids up to 2 ** 53 are exact as float64.
+        numbers = numbers.replace("xy", f"x{_NOWHERE}y{_NOWHERE}").translate(_TO_NUMBERS)
+        rows = np.fromstring(numbers, np.float64, sep=" ").reshape(-1, 3)
+        rows[rows[:, 1] == _NOWHERE, 1:] = np.nan
+        count = count[count > 0]
+        if not count.size:
+            return
+        begin = np.concatenate([[0], np.cumsum(count)[:-1]])
+        low = np.fmin.reduceat(rows[:, 1:], begin)
+        high = np.fmax.reduceat(rows[:, 1:], begin)
+        west, south = np.fmin.reduce(low)
+        east, north = np.fmax.reduce(high)
+        self.extent[:2] = np.fmin(self.extent[:2], (south, west))
+        self.extent[2:] = np.fmax(self.extent[2:], (north, east))
+        if self.within is not None:
+            keep = self.within.overlaps(low[:, 1], high[:, 1], low[:, 0], high[:, 0])
+            heads, rows, count = heads[keep], rows[np.repeat(keep, count)], count[keep]
+        self.ids.append(heads)
+        self.counts.append(count)
+        self.rows.append(rows)
+
+
+def _read_nodes(
+    path: Path, locations: Any, profile: SpeedProfile  # noqa: ANN401 - pyosmium has no types here
+) -> tuple[dict[int, Barrier], dict[int, str]]:  # fmt: skip
+    """Fill the locations; return the barriers that are not open, and the kinds of unknown ones."""
+    barriers: dict[int, Barrier] = {}
+    unknown: dict[int, str] = {}
+    tagged = osmium.filter.KeyFilter("barrier")
+    with osmium.io.Reader(str(path), osmium.osm.NODE) as reader:
+        for node in osmium.OsmFileIterator(reader, locations, tagged):
+            tags = {tag.k: tag.v for tag in node.tags}
+            barrier = judge_barrier(tags, profile=profile)
+            if barrier is Barrier.UNKNOWN:
+                unknown[node.id] = tags["barrier"]
+            elif barrier is not Barrier.OPEN:
+                barriers[node.id] = barrier
+    return barriers, unknown
+
+
+def _write_ways(path: Path, locations: Any, text: Path) -> None:  # noqa: ANN401 - as above
+    """Write all ways that may be roads or ferries as lines of OPL."""
+    roads = osmium.filter.KeyFilter("highway", "route")
+    writer = osmium.SimpleWriter(osmium.io.File(str(text), _TEXT_FORMAT))
+    try:
+        with osmium.io.Reader(str(path), osmium.osm.WAY) as reader:
+            osmium.apply(reader, locations, roads, writer)
+    finally:
+        writer.close()
+
+
+def _judged_lines(lines: Iterator[str], judge: _Judge, points: _Points) -> None:
+    """Read ways from lines of OPL, a chunk at a time."""
+    counted = judge.tally.add
+    while chunk := list(islice(lines, LINES_AT_ONCE)):
+        heads, texts = array("q"), []
+        for line in chunk:
+            head, _, nodes = line.rstrip("\n").rpartition(" N")
+            number, _, tag_text = head.partition(" T")
+            if "motor" not in tag_text and _ON_FOOT.search(tag_text):
+                counted("way_not_for_cars", f"way {number[1:]}")
+                continue
+            parts = tag_text.split(",")
+            rule = judge.rule(parts)
+            left_out = judge.rules[rule].left_out
+            if left_out:
+                if "highway=" in tag_text or left_out == "ferry_cars_unsaid":
+                    counted(left_out, f"way {number[1:]}")
+                continue
+            heads.extend((int(number[1:]), rule, judge.name(parts)))
+            texts.append(nodes)
+        points.add(np.frombuffer(heads, np.int64).reshape(-1, 3), texts)
+
+
+def _read_restrictions(path: Path) -> list[RawRestriction]:
+    wanted = osmium.filter.TagFilter(("type", "restriction"))
+    with osmium.io.Reader(str(path), osmium.osm.RELATION) as reader:
+        return [
+            RawRestriction(
+                relation.id,
+                {tag.k: tag.v for tag in relation.tags},
+                [(member.type, member.ref, member.role) for member in relation.members],
+            )
+            for relation in osmium.OsmFileIterator(reader, wanted)
+            if isinstance(relation, osmium.osm.Relation)
+        ]
+
+
+def _explain(path: Path, error: Exception) -> RoadError:
+    """Return the error a person can act on."""
+    found = str(error).strip() or type(error).__name__
+    lowered = found.lower()
+    if not path.stat().st_size:
+        what, remedy = "the file is empty", "fetch it again"
+    elif any(word in lowered for word in _ENDS_EARLY):
+        what, remedy = "the file ends too early", "fetch it again, whole"
+    elif "detect file format" in lowered or "not supported" in lowered:
+        what = "its name does not tell the format"
+        remedy = "give an extract named *.osm.pbf, *.osm or *.osm.bz2"
+    else:
+        what = "it is damaged or no OpenStreetMap file"
+        remedy = "give an extract named *.osm.pbf, *.osm or *.osm.bz2, fetched whole"
+    msg = f"{path}: cannot be read as an OpenStreetMap extract: {what} ({found}); {remedy}"
+    return RoadError(msg)
+
+
+def read_passes(
+    path: Path,
+    *,
+    profile: SpeedProfile,
+    within: Box | None,
+    tally: Tally,
+    progress: Progress,
+) -> RawRoads:
+    """Read ways for cars with their points, barriers and turn restrictions of a file.
+
+    Raises
+    ------
+    RoadError
+        If the file is missing, damaged, or not of OpenStreetMap.
+    """
+    if not path.is_file():
+        what = "is a folder" if path.is_dir() else "does not exist"
+        msg = f"{path}: {what}; give an extract named *.osm.pbf, *.osm or *.osm.bz2"
+        raise RoadError(msg)
+    kind = "mem" if path.stat().st_size <= LOCATIONS_IN_MEMORY_UP_TO else "file"
+    judge, points = _Judge(profile, tally), _Points(within)
+    try:
+        with tempfile.TemporaryDirectory(prefix="georoute-") as folder:
+            table = osmium.index.create_map(f"sparse_{kind}_array")
+            locations = osmium.NodeLocationsForWays(table)
+            locations.ignore_errors()
+            barriers, unknown = _read_nodes(path, locations, profile)
+            progress(STAGE, fraction=0.3)
+            text = Path(folder) / "ways.opl"
+            _write_ways(path, locations, text)
+            del locations, table
+            progress(STAGE, fraction=0.5)
+            with text.open(encoding="utf-8") as lines:
+                _judged_lines(lines, judge, points)
+        restrictions = _read_restrictions(path)
+    except (RuntimeError, OSError, ValueError, UnicodeDecodeError) as error:
+        raise _explain(path, error) from error
+    progress(STAGE, fraction=0.7)
+    raw = _joined(judge, points, barriers, restrictions)
+    on_roads = np.unique(raw.ref[np.isin(raw.ref, np.array(list(unknown), np.int64))])
+    for node in on_roads.tolist():
+        tally.add("barrier_unknown", f"node {node} barrier={unknown[node]}")
+    return raw
+
+
+def _joined(
+    judge: _Judge,
+    points: _Points,
+    barriers: dict[int, Barrier],
+    restrictions: list[RawRestriction],
+) -> RawRoads:
+    heads = np.concatenate([np.empty((0, 3), np.int64), *points.ids])
+    rows = np.concatenate([np.empty((0, 3)), *points.rows])
+    count = np.concatenate([np.empty(0, np.int64), *points.counts])
+    south, west, north, east = points.extent.tolist()
+    return RawRoads(
+        way=heads[:, 0].copy(),
+        rule=heads[:, 1].copy(),
+        name=heads[:, 2].astype(np.int32),
+        ptr=np.concatenate([[0], np.cumsum(count)]).astype(np.int64),
+        ref=rows[:, 0].astype(np.int64),
+        lat=rows[:, 2].copy(),
+        lon=rows[:, 1].copy(),
+        rules=judge.rules,
+        names=list(judge.names),
+        barriers=barriers,
+        restrictions=restrictions,
+        extent=(south, west, north, east),
+    )

@@ -246,8 +246,8 @@ def _nearest(
     waiting, reach = np.flatnonzero(shapely.is_geometry(points)), min(_FIRST_RING_M, limit_m)
     while waiting.size:
         which, stretch = index.tree.query(_squares(points[waiting], reach))
-        metres = shapely.distance(points[waiting[which]], index.lines[stretch])
-        near = metres <= reach
+        metres = np.asarray(shapely.distance(points[waiting[which]], index.lines[stretch]))
+        near = np.asarray(metres <= reach)
         place, stretch, metres = waiting[which[near]], stretch[near], metres[near]
         # Of several at one distance (a place before a junction): a two-way road open to all,
         # then the first of the table.
@@ -300,7 +300,7 @@ def _same_street(
     which, stretch = index.tree.query(_squares(points[asking], reach))
     named = (index.street[stretch] == wanted[asking[which]]) & index.candidate[stretch]
     which, stretch = which[named], stretch[named]
-    metres = shapely.distance(points[asking[which]], index.lines[stretch])
+    metres = np.asarray(shapely.distance(points[asking[which]], index.lines[stretch]))
     near = metres <= reach[which]
     which, stretch, metres = which[near], stretch[near], metres[near]
     order = np.lexsort((stretch, metres, which))

@@ -8,12 +8,12 @@ from itertools import pairwise
 import numpy as np
 from numpy.typing import NDArray
 
-from georoute.domain.run import Progress, ShouldStop, never_stop, no_progress
+from georoute.domain.run import Progress, no_progress
 from georoute.kernels.arrays import UNREACHABLE
+from georoute.roads.hierarchy import RoadPath, RoadPaths
 from georoute.roads.model import Access, RoadTable, Seeds
 from georoute.roads.network import RoadNetwork
 from georoute.roads.snapping import Snapped
-from georoute.roads.travel import RoadPath
 
 FIRST, OPEN, LAST = 0, 1, 2
 Way = tuple[int, ...]
@@ -183,9 +183,8 @@ class PlainSearch:
         targets: Seeds,
         *,
         progress: Progress = no_progress,
-        should_stop: ShouldStop = never_stop,
     ) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
-        del progress, should_stop
+        del progress
         shape = (sources.ptr.size - 1, targets.ptr.size - 1)
         ms, mm = np.zeros(shape, np.int64), np.zeros(shape, np.int64)
         for i in range(shape[0]):
@@ -194,8 +193,28 @@ class PlainSearch:
                 ms[i, j], mm[i, j], _ = self._best(tree, targets, j)
         return ms, mm
 
-    def paths(self, sources: Seeds, targets: Seeds, pairs: NDArray[np.int64]) -> list[RoadPath]:
-        return [self._path(sources, int(i), targets, int(j)) for i, j in pairs]
+    def paths(
+        self,
+        sources: Seeds,
+        targets: Seeds,
+        pairs: NDArray[np.int64],
+        *,
+        progress: Progress = no_progress,
+    ) -> RoadPaths:
+        del progress
+        found = [self._path(sources, int(i), targets, int(j)) for i, j in pairs]
+
+        def column(name: str) -> NDArray[np.int64]:
+            return np.array([getattr(path, name) for path in found], np.int64)
+
+        return RoadPaths(
+            ptr=np.cumsum([0, *(path.arcs.size for path in found)]),
+            arcs=np.concatenate([np.zeros(0, np.int64), *(path.arcs for path in found)]),
+            source_seed=column("source_seed"),
+            target_seed=column("target_seed"),
+            ms=column("ms"),
+            mm=column("mm"),
+        )
 
     def _path(self, sources: Seeds, i: int, targets: Seeds, j: int) -> RoadPath:
         tree = self._tree(sources, i)

@@ -10,7 +10,7 @@ import numpy as np
 from pyproj import Geod
 
 from georoute.domain.run import no_progress
-from georoute.errors import InputError
+from georoute.errors import RoadError
 from georoute.kernels.arrays import UNREACHABLE
 from georoute.projection import local_plane
 from georoute.roads.components import reached, strong_components
@@ -131,7 +131,7 @@ def build_network(table: RoadTable, *, progress: Progress = no_progress) -> Road
 
     Raises
     ------
-    InputError
+    RoadError
         There is no stretch that may be driven.
     """
     arc_ms = _arc_ms(table)
@@ -142,7 +142,7 @@ def build_network(table: RoadTable, *, progress: Progress = no_progress) -> Road
             f"{table.start.size} stretches. Check that it is an extract of the right area with "
             "roads in it."
         )
-        raise InputError(msg)
+        raise RoadError(msg)
     progress("roads", fraction=0.0)
     is_local = np.repeat((table.access & Access.LOCAL) > 0, 2)
     expansion = _in_order(table, set_apart(expand(table, is_open), is_local))

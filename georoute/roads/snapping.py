@@ -241,13 +241,13 @@ def _nearest(
     The search widens: few places need more than the first ring.
     """
     found = _Found.empty(points.size)
-    is_one_way = (network.after.reshape(-1, 2) < 0).any(axis=1)
+    is_one_way = np.asarray((network.after.reshape(-1, 2) < 0).any(axis=1))
     is_local = (network.table.access & Access.LOCAL) > 0
     waiting, reach = np.flatnonzero(shapely.is_geometry(points)), min(_FIRST_RING_M, limit_m)
     while waiting.size:
         which, stretch = index.tree.query(_squares(points[waiting], reach))
         metres = np.asarray(shapely.distance(points[waiting[which]], index.lines[stretch]))
-        near = np.asarray(metres <= reach)
+        near = metres <= reach
         place, stretch, metres = waiting[which[near]], stretch[near], metres[near]
         # Of several at one distance (a place before a junction): a two-way road open to all,
         # then the first of the table.

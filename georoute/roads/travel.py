@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, NamedTuple, Protocol
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Protocol
 
 import numpy as np
 
-from georoute.domain.run import never_stop, no_progress
+from georoute.domain.run import no_progress
 from georoute.kernels.arrays import UNREACHABLE
+from georoute.roads.hierarchy import RoadPath, matrix, paths
 from georoute.roads.legs import make_leg
 from georoute.roads.trip_ends import along_stretch, same_stretch, trip_ends
 
@@ -16,44 +18,52 @@ if TYPE_CHECKING:
 
     from numpy.typing import NDArray
 
-    from georoute.domain.run import Progress, ShouldStop
+    from georoute.domain.run import Progress
+    from georoute.roads.hierarchy import Hierarchy, RoadPaths
     from georoute.roads.legs import RoadLeg
     from georoute.roads.model import Seeds
     from georoute.roads.network import RoadNetwork
     from georoute.roads.snapping import Snapped
 
-__all__ = ["PathSearch", "RoadPath", "RoadTravel"]
-
-
-class RoadPath(NamedTuple):
-    """A shortest path: arcs of the network, the seeds at its ends, time and length with these.
-
-    ``source_seed``, ``target_seed``: index into the arrays of the seeds. Where there is no path,
-    ``ms`` is ``UNREACHABLE``.
-    """
-
-    arcs: NDArray[np.int64]
-    source_seed: int
-    target_seed: int
-    ms: int
-    mm: int
+__all__ = ["HierarchySearch", "PathSearch", "RoadTravel"]
 
 
 class PathSearch(Protocol):
-    """What finds shortest paths: least time, then least length."""
+    """What finds shortest paths on a network: least time, then least length."""
 
     def matrix(
-        self,
-        sources: Seeds,
-        targets: Seeds,
-        *,
-        progress: Progress,
-        should_stop: ShouldStop,
+        self, sources: Seeds, targets: Seeds, *, progress: Progress
     ) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
         """Return times and lengths, shape (sources, targets)."""
 
-    def paths(self, sources: Seeds, targets: Seeds, pairs: NDArray[np.int64]) -> Sequence[RoadPath]:
+    def paths(
+        self, sources: Seeds, targets: Seeds, pairs: NDArray[np.int64], *, progress: Progress
+    ) -> RoadPaths:
         """Return the path of each pair (source, target), shape (n, 2)."""
+
+
+@dataclass(frozen=True, slots=True)
+class HierarchySearch:
+    """Shortest paths by a contraction hierarchy of the arcs of a network."""
+
+    hierarchy: Hierarchy
+
+    def matrix(
+        self, sources: Seeds, targets: Seeds, *, progress: Progress = no_progress
+    ) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
+        """Return times and lengths, shape (sources, targets)."""
+        return matrix(self.hierarchy, sources, targets, progress=progress)
+
+    def paths(
+        self,
+        sources: Seeds,
+        targets: Seeds,
+        pairs: NDArray[np.int64],
+        *,
+        progress: Progress = no_progress,
+    ) -> RoadPaths:
+        """Return the path of each pair (source, target), shape (n, 2)."""
+        return paths(self.hierarchy, sources, targets, pairs, progress=progress)
 
 
 class RoadTravel:
@@ -76,16 +86,14 @@ class RoadTravel:
         self._ends = trip_ends(network, snapped)
 
     def matrix(
-        self, *, progress: Progress = no_progress, should_stop: ShouldStop = never_stop
+        self, *, progress: Progress = no_progress
     ) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
         """Return times in ms and lengths in mm between all places, int64 (P, P).
 
         Entry [i, j] is from i to j, ``UNREACHABLE`` where there is no way; the diagonal is 0.
         Length is that of the quickest way, of several equally quick the shortest.
         """
-        ms, mm = self._search.matrix(
-            self._ends.sources, self._ends.targets, progress=progress, should_stop=should_stop
-        )
+        ms, mm = self._search.matrix(self._ends.sources, self._ends.targets, progress=progress)
         i, j, along_ms, along_mm = same_stretch(self.network, self.snapped)
         better = _is_better(along_ms, along_mm, ms[i, j], mm[i, j])
         i, j = i[better], j[better]
@@ -98,18 +106,19 @@ class RoadTravel:
         """Return the leg from place ``i`` to place ``j``, or ``None`` where there is no way."""
         return self.legs([(i, j)])[0]
 
-    def legs(self, pairs: Sequence[tuple[int, int]]) -> list[RoadLeg | None]:
+    def legs(
+        self, pairs: Sequence[tuple[int, int]], *, progress: Progress = no_progress
+    ) -> list[RoadLeg | None]:
         """Return the legs of many pairs of places, ``None`` where there is no way.
 
         Time and length are those of ``matrix``.
         """
         wanted = np.array(pairs, np.int64).reshape(-1, 2)
         along = self._along(wanted)
-        found = self._search.paths(self._ends.sources, self._ends.targets, wanted)
-        return [
-            self._leg((int(i), int(j)), path, direct)
-            for (i, j), path, direct in zip(wanted, found, along, strict=True)
-        ]
+        found = self._search.paths(
+            self._ends.sources, self._ends.targets, wanted, progress=progress
+        )
+        return [self._leg((int(i), int(j)), found[k], along[k]) for k, (i, j) in enumerate(wanted)]
 
     def _along(self, pairs: NDArray[np.int64]) -> list[RoadPath]:
         """Return what driving along a common stretch takes, for each pair."""

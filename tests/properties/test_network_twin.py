@@ -10,9 +10,10 @@ import numpy as np
 import pytest
 
 from georoute.kernels.arrays import UNREACHABLE
+from georoute.roads.hierarchy import build_hierarchy
 from georoute.roads.network import RoadNetwork, build_network
 from georoute.roads.snapping import Snapped, road_index, snap
-from georoute.roads.travel import RoadTravel
+from georoute.roads.travel import HierarchySearch, RoadTravel
 from tests.roads_helpers import GEOD, LAT0, LON0, random_roads
 from tests.roads_twin import PlainSearch, RoadTwin
 
@@ -26,6 +27,11 @@ def places_on(network: RoadNetwork, seed: int) -> Snapped:
     return snap(network, lat, lon, index=road_index(network, islands=True))
 
 
+def hierarchy_of(network: RoadNetwork) -> HierarchySearch:
+    arcs = (network.tail, network.head, network.ms, network.mm)
+    return HierarchySearch(build_hierarchy(*arcs, nodes=network.nodes))
+
+
 @pytest.mark.parametrize("batch", range(BATCHES))
 def test_times_and_lengths_are_those_of_the_twin(batch: int) -> None:
     reached = 0
@@ -34,6 +40,9 @@ def test_times_and_lengths_are_those_of_the_twin(batch: int) -> None:
         network, twin = build_network(table), RoadTwin(table)
         snapped = places_on(network, seed)
         ms, mm = RoadTravel(network, snapped, PlainSearch(network)).matrix()
+        by_hierarchy = RoadTravel(network, snapped, hierarchy_of(network)).matrix()
+        assert np.array_equal(ms, by_hierarchy[0])
+        assert np.array_equal(mm, by_hierarchy[1])
         for i in range(snapped.places):
             expected = twin.costs(snapped, i)
             assert list(zip(ms[i].tolist(), mm[i].tolist(), strict=True)) == expected, seed
@@ -47,7 +56,7 @@ def test_legs_obey_the_rules_and_are_as_long_as_they_say(batch: int) -> None:
         table = random_roads(seed)
         network, twin = build_network(table), RoadTwin(table)
         snapped = places_on(network, seed)
-        travel = RoadTravel(network, snapped, PlainSearch(network))
+        travel = RoadTravel(network, snapped, hierarchy_of(network))
         ms, mm = travel.matrix()
         pairs = [(i, j) for i in range(snapped.places) for j in range(snapped.places)]
         for (i, j), leg in zip(pairs, travel.legs(pairs), strict=True):

@@ -129,16 +129,25 @@ def random_roads(seed: int) -> RoadTable:
 
 def _random_bans(draft: RoadDraft, draw: np.random.Generator) -> None:
     """Ban walks of two to four arcs; some share beginnings, ends or middles."""
-    ends = [r["ends"] for r in draft.roads]
-    tails = [end for pair in ends for end in pair]  # type: ignore[attr-defined]  # pairs of numbers
-    heads = [end for pair in ends for end in pair[::-1]]  # type: ignore[index]  # as above
-    for _ in range(int(draw.integers(0, 12))):
-        walk = [int(draw.integers(0, len(tails)))]
-        for _ in range(int(draw.integers(1, 4))):
-            onward = [arc for arc in range(len(tails)) if tails[arc] == heads[walk[-1]]]
-            walk.append(int(draw.choice(onward)))
+    ends = np.array([r["ends"] for r in draft.roads], np.int64)
+    tails, heads = ends.reshape(-1).tolist(), ends[:, ::-1].reshape(-1).tolist()
+
+    def onward(walk: list[int], steps: int) -> list[int]:
+        for _ in range(steps):
+            follow = [arc for arc in range(len(tails)) if tails[arc] == heads[walk[-1]]]
+            walk = [*walk, int(draw.choice(follow))]
+        return walk
+
+    for _ in range(int(draw.integers(0, 9))):
+        walk = onward([int(draw.integers(0, len(tails)))], int(draw.integers(1, 4)))
         draft.ban(*walk)
-        if draw.random() < 0.4 and len(walk) > 2:
-            draft.ban(*walk[1:])
-        elif draw.random() < 0.3:
+        kind = draw.random()
+        if kind < 0.2 and len(walk) > 2:
+            draft.ban(*walk[1:-1], *onward([walk[-1]], 1))
+        elif kind < 0.5 and len(walk) > 2:
+            # One that begins within the first and ends elsewhere, sooner or later.
+            draft.ban(*onward(walk[1:-1], int(draw.integers(1 + (len(walk) == 3), 3))))
+        elif kind < 0.9 and len(walk) > 3:
+            draft.ban(*walk[1:-1])
+        elif kind < 0.8:
             draft.ban(*walk[:-1], walk[-1] ^ 1)  # mostly one that makes no sense

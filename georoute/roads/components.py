@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING
 
 import numpy as np
 from scipy.sparse import csr_array
@@ -11,7 +11,7 @@ from scipy.sparse.csgraph import breadth_first_order, connected_components
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
-__all__ = ["connected_parts", "reached", "strong_components"]
+__all__ = ["reached", "strong_components"]
 
 
 def _graph(tail: NDArray[np.int64], head: NDArray[np.int64], nodes: int) -> csr_array:
@@ -25,25 +25,7 @@ def strong_components(
 
     Within a strongly connected component every node can be reached from every other.
     """
-    return _labelled(tail, head, nodes, "strong")
-
-
-def connected_parts(
-    tail: NDArray[np.int64], head: NDArray[np.int64], *, nodes: int
-) -> tuple[NDArray[np.int32], NDArray[np.int64]]:
-    """Return the connected part of each node, directions ignored, and the nodes of each part."""
-    return _labelled(tail, head, nodes, "weak")
-
-
-def _labelled(
-    tail: NDArray[np.int64],
-    head: NDArray[np.int64],
-    nodes: int,
-    connection: Literal["strong", "weak"],
-) -> tuple[NDArray[np.int32], NDArray[np.int64]]:
-    _, labels = connected_components(
-        _graph(tail, head, nodes), directed=True, connection=connection
-    )
+    _, labels = connected_components(_graph(tail, head, nodes), directed=True, connection="strong")
     label = np.asarray(labels, np.int32)
     return label, np.bincount(label, minlength=1).astype(np.int64)
 

@@ -7,6 +7,8 @@ search", Communications of the ACM 18 (1975) 333-340), with arcs for letters and
 A *node* of the expanded network is a junction together with such a state; nearly everywhere the
 state is empty and the node is the junction itself. Bans by way of a junction, by way of one or
 several ways, and bans that overlap are all exact.
+
+Roads that are open only to those whose trip begins or ends there are set apart in the same way.
 """
 
 from __future__ import annotations
@@ -24,7 +26,10 @@ if TYPE_CHECKING:
 
     from georoute.roads.model import RoadTable
 
-__all__ = ["Expansion", "arc_ends", "expand"]
+__all__ = ["CONNECTOR", "Expansion", "arc_ends", "expand", "set_apart"]
+
+CONNECTOR = -1
+"""The arc of the table of an arc between levels, which takes no time."""
 
 _SHORTEST_BAN = 2
 
@@ -35,15 +40,18 @@ class Expansion:
 
     ``junction``: int64 (X,), where each node is; the first N are the junctions with nothing to
     remember. ``tail``, ``head``: int64 (A,), nodes; ``arc``: int64 (A,), the arc of the table that
-    is driven. ``after``: int64 (2 E,), the node where a trip that begins on an arc leaves it, -1
-    where the arc is closed. ``unusable``: bans left out because their arcs do not follow one
-    another or are fewer than two.
+    is driven, or ``CONNECTOR``. ``is_last``: bool (A,), a trip may end on it.
+
+    ``after``: int64 (2 E,), the node where a trip that begins on an arc leaves it, -1 where the
+    arc is closed. ``unusable``: bans left out because their arcs do not follow one another or are
+    fewer than two.
     """
 
     junction: NDArray[np.int64]
     tail: NDArray[np.int64]
     head: NDArray[np.int64]
     arc: NDArray[np.int64]
+    is_last: NDArray[np.bool_]
     after: NDArray[np.int64]
     unusable: int
 
@@ -125,13 +133,67 @@ def expand(table: RoadTable, is_open: NDArray[np.bool_]) -> Expansion:
         after[arc] = node_of[state]
     more = _arcs_of_states(memory, living, node_of, (tail, head, arcs))
     last = np.array([memory.last[state] for state in living], np.int64)
+    driven = np.concatenate((arcs, more[2]))
     return Expansion(
         junction=np.concatenate((np.arange(junctions, dtype=np.int64), head[last])),
         tail=np.concatenate((tail[arcs], more[0])),
         head=np.concatenate((after[arcs], more[1])),
-        arc=np.concatenate((arcs, more[2])),
+        arc=driven,
+        is_last=np.ones(driven.size, np.bool_),
         after=after,
         unusable=unusable,
+    )
+
+
+def set_apart(expansion: Expansion, is_local: NDArray[np.bool_]) -> Expansion:
+    """Let local arcs be driven at the beginning and at the end of a trip only.
+
+    The nodes of local arcs get two more levels, one for the first leg and one for the last. A
+    trip that begins locally begins on the first level, goes down to the level of the roads open
+    to all, and from there to the last level; no arc leads back. A trip within one local zone
+    passes the middle level at a node of the zone and may so stay in it throughout.
+
+    Parameters
+    ----------
+    expansion
+        The network as if all arcs were open to all.
+    is_local
+        Shape (2 E,): which arcs of the table are for the first and last leg only.
+
+    Returns
+    -------
+    The network on three levels.
+    """
+    local = is_local[expansion.arc]
+    if not local.any():
+        return expansion
+    nodes = expansion.junction.size
+    tail, head, arc = expansion.tail, expansion.head, expansion.arc
+    touched = np.unique(np.concatenate((tail[local], head[local])))
+    first = np.full(nodes, -1, np.int64)
+    first[touched] = nodes + np.arange(touched.size)
+    last = np.full(nodes, -1, np.int64)
+    last[touched] = first[touched] + touched.size
+    opened = np.flatnonzero(is_local & (expansion.after >= 0))
+    after = expansion.after.copy()
+    after[opened] = first[after[opened]]
+    none = np.full(touched.size, CONNECTOR, np.int64)
+    inner = np.count_nonzero(~local)
+    is_last = np.zeros(inner + 2 * (none.size + arc[local].size), np.bool_)
+    is_last[:inner] = True
+    is_last[is_last.size - arc[local].size :] = True
+    return Expansion(
+        junction=np.concatenate((expansion.junction, *2 * [expansion.junction[touched]])),
+        tail=np.concatenate(
+            (tail[~local], first[tail[local]], first[touched], touched, last[tail[local]])
+        ),
+        head=np.concatenate(
+            (head[~local], first[head[local]], touched, last[touched], last[head[local]])
+        ),
+        arc=np.concatenate((arc[~local], arc[local], none, none, arc[local])),
+        is_last=is_last,
+        after=after,
+        unusable=expansion.unusable,
     )
 
 

@@ -10,11 +10,11 @@ import numpy as np
 from pyproj import Geod
 
 from georoute.domain.run import no_progress
-from georoute.errors import InputError
+from georoute.errors import RoadError
 from georoute.kernels.arrays import UNREACHABLE
 from georoute.projection import local_plane
-from georoute.roads.components import connected_parts, reached, strong_components
-from georoute.roads.expansion import Expansion, expand
+from georoute.roads.components import reached, strong_components
+from georoute.roads.expansion import Expansion, expand, set_apart
 from georoute.roads.model import Access, RoadRemark
 
 if TYPE_CHECKING:
@@ -57,22 +57,22 @@ class Standing(IntEnum):
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class RoadNetwork:
-    """X nodes, A arcs open to all traffic, B arcs for the first and last leg only.
+    """X nodes and A arcs between them: every path from a start to an end obeys the rules.
 
-    A node is a junction with what the driver must remember there to obey banned turns (see
-    ``expansion``); nodes stand in spatial order. ``junction``: int64 (X,), index into the nodes of
-    ``table``. ``tail``, ``head``, ``arc``, ``ms``, ``mm``: int64 (A,), from node, to node, arc of
-    the table (``2 * stretch``, odd: driven backwards), time and length. ``local_tail``,
-    ``local_head``, ``local_arc``: int64 (B,), the same for stretches of ``Access.LOCAL``.
+    A node is a junction with what the driver must remember there to obey banned turns, and the
+    level of the trip: first local leg, roads open to all, last local leg (see ``expansion``).
+    Nodes stand in spatial order. ``junction``: int64 (X,), index into the nodes of ``table``.
+    ``tail``, ``head``, ``arc``, ``ms``, ``mm``: int64 (A,), from node, to node, arc of the table
+    (``2 * stretch``, odd: driven backwards; ``CONNECTOR``: none), time and length.
 
     ``after``: int64 (2 E,), the node where a trip that begins on an arc leaves it, -1: closed.
-    ``before[before_ptr[a]:before_ptr[a + 1]]``: the nodes from which arc ``a`` may be entered.
+    ``before[before_ptr[a]:before_ptr[a + 1]]``: the nodes from which a trip may enter arc ``a`` to
+    end on it.
 
-    ``component``: int32 (X,), strongly connected component over the arcs open to all;
-    ``component_nodes``: int64, nodes in each; ``main``: the largest. ``zone``: int32 (E,),
-    connected part of the local stretches, -1 elsewhere; ``zone_nodes``: int64, nodes in each.
-    ``standing``: uint8 (E,), see ``Standing``. ``point_mm``: float64, how far along its stretch
-    each point of the shape is; ``point_x``, ``point_y``: metres on ``network_plane(table)``.
+    ``component``: int32 (X,), strongly connected component; ``component_nodes``: int64, nodes in
+    each; ``main``: the largest of those with roads open to all. ``standing``: uint8 (E,), see
+    ``Standing``. ``point_mm``: float64, how far along its stretch each point of the shape is;
+    ``point_x``, ``point_y``: metres on ``network_plane(table)``.
     """
 
     table: RoadTable
@@ -82,17 +82,12 @@ class RoadNetwork:
     arc: NDArray[np.int64]
     ms: NDArray[np.int64]
     mm: NDArray[np.int64]
-    local_tail: NDArray[np.int64]
-    local_head: NDArray[np.int64]
-    local_arc: NDArray[np.int64]
     after: NDArray[np.int64]
     before_ptr: NDArray[np.int64]
     before: NDArray[np.int64]
     component: NDArray[np.int32]
     component_nodes: NDArray[np.int64]
     main: int
-    zone: NDArray[np.int32]
-    zone_nodes: NDArray[np.int64]
     standing: NDArray[np.uint8]
     point_mm: NDArray[np.float64]
     point_x: NDArray[np.float64]
@@ -110,14 +105,10 @@ class RoadNetwork:
         return _arc_ms(self.table)
 
     def nodes_around(self, stretch: int) -> int:
-        """Return how many nodes hang together with a stretch: of its component or local zone."""
-        if self.zone[stretch] >= 0:
-            return int(self.zone_nodes[self.zone[stretch]])
+        """Return how many nodes hang together with a stretch, one-way streets obeyed."""
         nodes = self.after[2 * stretch : 2 * stretch + 2]
-        open_nodes = nodes[nodes >= 0]
-        if open_nodes.size == 0:
-            return 0
-        return int(self.component_nodes[self.component[open_nodes]].max())
+        nodes = nodes[nodes >= 0]
+        return int(self.component_nodes[self.component[nodes]].max(initial=0))
 
 
 def _arc_ms(table: RoadTable) -> NDArray[np.int64]:
@@ -140,7 +131,7 @@ def build_network(table: RoadTable, *, progress: Progress = no_progress) -> Road
 
     Raises
     ------
-    InputError
+    RoadError
         There is no stretch that may be driven.
     """
     arc_ms = _arc_ms(table)
@@ -151,41 +142,34 @@ def build_network(table: RoadTable, *, progress: Progress = no_progress) -> Road
             f"{table.start.size} stretches. Check that it is an extract of the right area with "
             "roads in it."
         )
-        raise InputError(msg)
+        raise RoadError(msg)
     progress("roads", fraction=0.0)
-    expansion = _in_order(table, expand(table, is_open))
+    is_local = np.repeat((table.access & Access.LOCAL) > 0, 2)
+    expansion = _in_order(table, set_apart(expand(table, is_open), is_local))
     progress("roads", fraction=0.3)
-    is_local = (table.access[expansion.arc >> 1] & Access.LOCAL) > 0
+    driven = expansion.arc >= 0
     before_ptr, before = _entries(expansion, table.start.size)
-    open_to_all = ~is_local
-    component, sizes = strong_components(
-        expansion.tail[open_to_all], expansion.head[open_to_all], nodes=expansion.junction.size
-    )
-    main = int(np.argmax(sizes))
-    zone, zone_nodes = _zones(table, is_open)
+    nodes = expansion.junction.size
+    component, sizes = strong_components(expansion.tail, expansion.head, nodes=nodes)
+    main = _main(expansion, component, is_local)
     progress("roads", fraction=0.5)
-    standing = _standings(table, expansion, is_local, component == main)
+    standing = _standings(table, expansion, component == main)
     progress("roads", fraction=0.7)
     x, y = network_plane(table).forward(table.point_lon, table.point_lat)
     return RoadNetwork(
         table=table,
         junction=expansion.junction,
-        tail=expansion.tail[open_to_all],
-        head=expansion.head[open_to_all],
-        arc=expansion.arc[open_to_all],
-        ms=arc_ms[expansion.arc[open_to_all]],
-        mm=table.length_mm[expansion.arc[open_to_all] >> 1],
-        local_tail=expansion.tail[is_local],
-        local_head=expansion.head[is_local],
-        local_arc=expansion.arc[is_local],
+        tail=expansion.tail,
+        head=expansion.head,
+        arc=expansion.arc,
+        ms=np.where(driven, arc_ms[expansion.arc], 0),
+        mm=np.where(driven, table.length_mm[expansion.arc >> 1], 0),
         after=expansion.after,
         before_ptr=before_ptr,
         before=before,
         component=component,
         component_nodes=sizes,
         main=main,
-        zone=zone,
-        zone_nodes=zone_nodes,
         standing=standing,
         point_mm=_along(table),
         point_x=x,
@@ -243,6 +227,7 @@ def _in_order(table: RoadTable, expansion: Expansion) -> Expansion:
         tail=tail[order],
         head=head[order],
         arc=expansion.arc[order],
+        is_last=expansion.is_last[order],
         after=new_of[expansion.after],
         unusable=expansion.unusable,
     )
@@ -250,51 +235,33 @@ def _in_order(table: RoadTable, expansion: Expansion) -> Expansion:
 
 def _entries(expansion: Expansion, stretches: int) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
     """Return, for each arc of the table, the nodes from which it may be entered."""
-    order = np.argsort(expansion.arc, kind="stable")
-    counts = np.bincount(expansion.arc, minlength=2 * stretches)
+    arc, tail = expansion.arc[expansion.is_last], expansion.tail[expansion.is_last]
+    order = np.argsort(arc, kind="stable")
+    counts = np.bincount(arc, minlength=2 * stretches)
     ptr = np.concatenate((np.zeros(1, np.int64), np.cumsum(counts)))
-    return ptr, expansion.tail[order]
+    return ptr, tail[order]
 
 
-def _zones(
-    table: RoadTable, is_open: NDArray[np.bool_]
-) -> tuple[NDArray[np.int32], NDArray[np.int64]]:
-    """Return the connected part of each local stretch, and the junctions of each part."""
-    local = ((table.access & Access.LOCAL) > 0) & is_open.reshape(-1, 2).any(axis=1)
-    zone = np.full(local.size, -1, np.int32)
-    if not local.any():
-        return zone, np.zeros(0, np.int64)
-    used, ends = np.unique((table.start[local], table.end[local]), return_inverse=True)
-    first, second = ends.reshape(2, -1)
-    label, sizes = connected_parts(first, second, nodes=used.size)
-    zone[local] = label[first]
-    return zone, sizes
+def _main(expansion: Expansion, component: NDArray[np.int32], is_local: NDArray[np.bool_]) -> int:
+    """Return the component with most nodes of roads open to all; of any where all are local."""
+    arc = expansion.arc
+    open_to_all = (arc >= 0) & ~is_local[arc]
+    chosen = open_to_all if open_to_all.any() else np.ones(arc.size, np.bool_)
+    nodes = np.unique(np.concatenate((expansion.tail[chosen], expansion.head[chosen])))
+    return int(np.argmax(np.bincount(component[nodes])))
 
 
 def _standings(
-    table: RoadTable,
-    expansion: Expansion,
-    is_local: NDArray[np.bool_],
-    is_main: NDArray[np.bool_],
+    table: RoadTable, expansion: Expansion, is_main: NDArray[np.bool_]
 ) -> NDArray[np.uint8]:
     """Return whether trips between each stretch and the main part exist, by the rules."""
-    tail, head, arc = expansion.tail, expansion.head, expansion.arc
-    out_tail, out_head = tail[~is_local], head[~is_local]
-    in_tail, in_head = tail[is_local], head[is_local]
-    leads = reached(out_head, out_tail, is_main)
-    led_to = reached(out_tail, out_head, is_main)
-    # Local stretches come first and last: they lead to what leads to the main part.
-    leads_locally = reached(in_head, in_tail, leads)
-    led_to_locally = reached(in_tail, in_head, led_to)
-
+    leads = reached(expansion.head, expansion.tail, is_main)
+    led_to = reached(expansion.tail, expansion.head, is_main)
     opened = np.flatnonzero(expansion.after >= 0)
-    local_arc = (table.access[opened >> 1] & Access.LOCAL) > 0
-    node = expansion.after[opened]
     may_leave = np.zeros(table.start.size, np.bool_)
-    may_leave[opened[np.where(local_arc, leads_locally[node], leads[node])] >> 1] = True
+    may_leave[opened[leads[expansion.after[opened]]] >> 1] = True
     may_enter = np.zeros(table.start.size, np.bool_)
-    may_enter[arc[np.where(is_local, led_to_locally[tail], led_to[tail])] >> 1] = True
-
+    may_enter[expansion.arc[expansion.is_last & led_to[expansion.tail]] >> 1] = True
     standing = np.full(table.start.size, Standing.ISLAND, np.uint8)
     standing[may_leave & ~may_enter] = Standing.NO_WAY_IN
     standing[may_enter & ~may_leave] = Standing.NO_WAY_OUT

@@ -16,6 +16,7 @@ TEXTS: Mapping[str, str] = {
     "way_not_for_cars": "ways that are not for cars were left out",
     "way_area": "ways that draw the outline of an area were left out",
     "way_reversible": "ways whose direction changes with the hour were left out",
+    "way_shut": "ways are closed to cars in both directions and were left out",
     "way_cut": "ways lack nodes in this file and were cut there",
     "way_without_nodes": "ways have fewer than two nodes in this file and were left out",
     "way_local": "ways are for trips that begin or end there: no through traffic",

@@ -241,12 +241,12 @@ def _nearest(
     The search widens: few places need more than the first ring.
     """
     found = _Found.empty(points.size)
-    is_one_way = (network.after.reshape(-1, 2) < 0).any(axis=1)
+    is_one_way = np.asarray((network.after.reshape(-1, 2) < 0).any(axis=1))
     is_local = (network.table.access & Access.LOCAL) > 0
     waiting, reach = np.flatnonzero(shapely.is_geometry(points)), min(_FIRST_RING_M, limit_m)
     while waiting.size:
         which, stretch = index.tree.query(_squares(points[waiting], reach))
-        metres = shapely.distance(points[waiting[which]], index.lines[stretch])
+        metres = np.asarray(shapely.distance(points[waiting[which]], index.lines[stretch]))
         near = metres <= reach
         place, stretch, metres = waiting[which[near]], stretch[near], metres[near]
         # Of several at one distance (a place before a junction): a two-way road open to all,
@@ -300,7 +300,7 @@ def _same_street(
     which, stretch = index.tree.query(_squares(points[asking], reach))
     named = (index.street[stretch] == wanted[asking[which]]) & index.candidate[stretch]
     which, stretch = which[named], stretch[named]
-    metres = shapely.distance(points[asking[which]], index.lines[stretch])
+    metres = np.asarray(shapely.distance(points[asking[which]], index.lines[stretch]))
     near = metres <= reach[which]
     which, stretch, metres = which[near], stretch[near], metres[near]
     order = np.lexsort((stretch, metres, which))

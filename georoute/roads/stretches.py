@@ -194,7 +194,7 @@ def cut_stretches(raw: RawRoads, *, within: Box | None, tally: Tally) -> Stretch
     begins = _breaks(points, joined, raw.barriers)[at] | ~joined[at - 1]
     begins[:1] = True
     first = np.flatnonzero(begins)
-    last = np.append(first[1:], at.size) - 1
+    last = np.append(first, at.size)[1:] - 1
     from_, to = at[first], at[last] + 1
     length_mm = np.zeros(0, np.int64)
     if first.size:

@@ -261,6 +261,10 @@ def judge_way(tags: Mapping[str, str], *, profile: SpeedProfile) -> WayRule:
     along, against, remark = _directions(tags)
     if remark == "way_reversible":
         return WayRule(left_out=remark)
+    shut_along, shut_against = _closed_directions(tags)
+    along, against = along and not shut_along, against and not shut_against
+    if not (along or against):
+        return WayRule(left_out="way_shut")
     highway = tags["highway"]
     road_class = highway if highway in _DRIVEN else "pedestrian"
     speeds, remarks = _speeds(tags, road_class, profile)
@@ -277,12 +281,11 @@ def judge_way(tags: Mapping[str, str], *, profile: SpeedProfile) -> WayRule:
     local = entry is Entry.LOCAL or tags.get("service") == "emergency_access"
     if local:
         remarks.append(("way_local", ""))
-    shut_along, shut_against = _closed_directions(tags)
     return WayRule(
         road_class=road_class,
         access=Access.LOCAL if local else Access.THROUGH,
-        forward_kmh=speeds[0] * (along and not shut_along),
-        backward_kmh=speeds[1] * (against and not shut_against),
+        forward_kmh=speeds[0] * along,
+        backward_kmh=speeds[1] * against,
         remarks=tuple(remarks),
     )
 

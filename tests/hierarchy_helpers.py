@@ -1,0 +1,134 @@
+"""Small networks drawn at random, and slow twins in plain Python of what is asked of them."""
+
+from __future__ import annotations
+
+import heapq
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy.sparse import csr_array
+from scipy.sparse.csgraph import dijkstra
+
+from georoute.kernels.arrays import UNREACHABLE
+from georoute.roads.model import Seeds
+
+
+@dataclass(frozen=True, kw_only=True, eq=False)
+class Net:
+    """Arcs between ``nodes`` nodes, int64 each."""
+
+    tail: NDArray[np.int64]
+    head: NDArray[np.int64]
+    ms: NDArray[np.int64]
+    mm: NDArray[np.int64]
+    nodes: int
+
+    @property
+    def arcs(self) -> tuple[NDArray[np.int64], ...]:
+        return self.tail, self.head, self.ms, self.mm
+
+
+def draw_net(seed: int) -> Net:
+    """One-ways, parallel arcs, self-loops, closed arcs, no time or no length, parts cut off."""
+    rng = np.random.default_rng(seed)
+    nodes = int(rng.integers(1, 40))
+    count = int(rng.integers(0, 4 * nodes))
+    tail = rng.integers(0, nodes, count)
+    # Half of the arcs stay near: chains and dead ends, not only a tangle.
+    near = np.clip(tail + rng.integers(-2, 3, count), 0, nodes - 1)
+    head = np.where(rng.random(count) < 0.5, near, rng.integers(0, nodes, count))
+    # Few different values: many ties in time that the length must decide.
+    ms = rng.integers(0, int(rng.choice([3, 20, 10_000])), count)
+    mm = rng.integers(0, int(rng.choice([3, 20, 100_000])), count)
+    ms[rng.random(count) < 0.05] = UNREACHABLE
+    return Net(tail=tail, head=head, ms=ms, mm=mm, nodes=nodes)
+
+
+def draw_seeds(net: Net, places: int, seed: int) -> Seeds:
+    """None to three nodes a place, with offsets; one in ten is out of reach."""
+    rng = np.random.default_rng([seed, places])
+    many = rng.integers(0, 4, places)
+    total = int(many.sum())
+    ms = rng.integers(0, 50, total)
+    ms[rng.random(total) < 0.1] = UNREACHABLE
+    return Seeds(
+        ptr=np.concatenate(([0], np.cumsum(many))),
+        node=rng.integers(0, net.nodes, total),
+        ms=ms,
+        mm=rng.integers(0, 500, total),
+    )
+
+
+def at_nodes(nodes: NDArray[np.int64]) -> Seeds:
+    """One place at each node."""
+    nothing = np.zeros(nodes.size, np.int64)
+    return Seeds(ptr=np.arange(nodes.size + 1), node=nodes, ms=nothing, mm=nothing)
+
+
+Pair = tuple[int, int]
+
+
+def lexicographic(net: Net, seeds: Seeds, place: int) -> dict[int, Pair]:
+    """Return (ms, mm) from a place to every node it reaches, by Dijkstra on pairs."""
+    leaving: dict[int, list[tuple[int, int, int]]] = {}
+    for tail, head, ms, mm in zip(*(a.tolist() for a in net.arcs), strict=True):
+        if ms < UNREACHABLE:
+            leaving.setdefault(tail, []).append((head, ms, mm))
+    heap = [
+        (int(seeds.ms[s]), int(seeds.mm[s]), int(seeds.node[s]))
+        for s in range(seeds.ptr[place], seeds.ptr[place + 1])
+        if seeds.ms[s] < UNREACHABLE
+    ]
+    heapq.heapify(heap)
+    done: dict[int, Pair] = {}
+    while heap:
+        ms, mm, node = heapq.heappop(heap)
+        if node in done:
+            continue
+        done[node] = (ms, mm)
+        for head, more_ms, more_mm in leaving.get(node, []):
+            heapq.heappush(heap, (ms + more_ms, mm + more_mm, head))
+    return done
+
+
+def slow_matrix(
+    net: Net, sources: Seeds, targets: Seeds
+) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
+    """Return times and lengths of all pairs by the search above."""
+    rows, columns = sources.ptr.size - 1, targets.ptr.size - 1
+    table = np.full((2, rows, columns), UNREACHABLE, np.int64)
+    for i in range(rows):
+        reached = lexicographic(net, sources, i)
+        for j in range(columns):
+            found = [
+                (reached[v][0] + int(ms), reached[v][1] + int(mm))
+                for v, ms, mm in zip(*(a.tolist() for a in _part(targets, j)), strict=True)
+                if v in reached and ms < UNREACHABLE
+            ]
+            if found:
+                table[:, i, j] = min(found)
+    return table[0], table[1]
+
+
+def _part(seeds: Seeds, place: int) -> tuple[NDArray[np.int64], ...]:
+    part = slice(seeds.ptr[place], seeds.ptr[place + 1])
+    return seeds.node[part], seeds.ms[part], seeds.mm[part]
+
+
+def scipy_times(net: Net) -> NDArray[np.int64]:
+    """Return the times between all nodes by scipy.
+
+    It drops zeros and adds duplicates up: so the fastest arc of each pair only, and every time
+    times 2^20 plus 1, which the division takes off again (paths have far fewer arcs).
+    """
+    open_arcs = np.flatnonzero((net.ms < UNREACHABLE) & (net.tail != net.head))
+    order = open_arcs[np.lexsort((net.ms[open_arcs], net.head[open_arcs], net.tail[open_arcs]))]
+    first = np.ones(order.size, np.bool_)
+    first[1:] = (np.diff(net.tail[order]) != 0) | (np.diff(net.head[order]) != 0)
+    kept = order[first]
+    weights = net.ms[kept].astype(np.float64) * 2**20 + 1
+    graph = csr_array((weights, (net.tail[kept], net.head[kept])), shape=(net.nodes, net.nodes))
+    found = np.asarray(dijkstra(graph))
+    times = np.floor(np.where(np.isinf(found), 0, found) / 2**20).astype(np.int64)
+    return np.where(np.isinf(found), UNREACHABLE, times)

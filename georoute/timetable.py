@@ -9,6 +9,7 @@ import numpy as np
 
 from georoute.domain.instants import later
 from georoute.domain.plan import DayTour, Leg, Stop
+from georoute.domain.roads import LegShape
 from georoute.kernels.arrays import UNREACHABLE, leg_mm, leg_ms
 from georoute.kernels.clock import clock_tour, latest_arrivals, time_tour, tour_cost
 from georoute.problem import MICRO
@@ -99,8 +100,11 @@ def _legs(
 ) -> tuple[Leg, ...]:
     travel = packed.problem.travel
     departures = [depart, *(stop.leave for stop in stops)]
+    pairs = list(pairwise(places))
+    straight = (LegShape(),) * len(pairs)
+    shapes = straight if packed.ways is None else packed.ways.legs(pairs)
     legs = []
-    for k, (i, j) in enumerate(pairwise(places)):
+    for k, ((i, j), shape) in enumerate(zip(pairs, shapes, strict=True)):
         drive_s = int(leg_ms(travel, i, j)) / 1_000
         legs.append(
             Leg(
@@ -111,6 +115,9 @@ def _legs(
                 arrive=later(departures[k], drive_s),
                 drive_s=drive_s,
                 dist_m=int(leg_mm(travel, i, j)) / 1_000,
+                path=shape.path,
+                roads=shape.roads,
+                ferry=shape.ferry,
             )
         )
     return tuple(legs)

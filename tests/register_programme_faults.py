@@ -145,6 +145,15 @@ FAULTS: list[tuple[str, str, str, str]] = [
     ("unknown_travel_method", "travel.method", 'method = "detour"', 'method = "streets"'),
     ("unknown_travel_method", "travel.method", 'method = "detour"', 'method = "Detour"'),
     *(
+        (
+            "unknown_road_class",
+            f"travel.roads.{table}.{name}",
+            "speed_kmh = 40",
+            f"speed_kmh = 40\n[travel.roads.{table}]\n{name} = 0.5",
+        )
+        for table, name in (("speeds", "highway"), ("real_factors", "residental"), ("speeds", "x"))
+    ),
+    *(
         ("missing_roads", "travel.roads.path", 'method = "detour"', f'method = "roads"{more}')
         for more in ("", "\nspeed_kmh = 9", "\n[travel.roads]\ncountry = 'CL'")
     ),

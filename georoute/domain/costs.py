@@ -7,6 +7,8 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from georoute.domain.roads import Ways
+
 __all__ = ["CostMatrix", "Places", "Tariff"]
 
 
@@ -32,7 +34,8 @@ class CostMatrix:
     *from* i *to* j, so both may be asymmetric. An unreachable pair is ``inf`` in both.
     ``source`` says in words where the figures come from; ``estimated`` is true unless they
     were measured on roads or given by the user; ``low_factor`` and ``high_factor`` bound the
-    true time as a multiple of the estimate (1.0 where no interval is claimed).
+    true time as a multiple of the estimate (1.0 where no interval is claimed). ``ways`` knows how
+    legs are driven where they were measured along roads.
     """
 
     place_ids: tuple[str, ...]
@@ -42,6 +45,7 @@ class CostMatrix:
     estimated: bool
     low_factor: float = 1.0
     high_factor: float = 1.0
+    ways: Ways | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)

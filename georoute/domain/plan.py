@@ -10,11 +10,10 @@ from types import MappingProxyType
 
 from georoute.domain.instants import elapsed_s
 from georoute.domain.programme import Programme
+from georoute.domain.roads import BackdropLine, RoadPoint
 from georoute.domain.sites import Site, Visit
 
 __all__ = [
-    "BackdropKind",
-    "BackdropLine",
     "Bound",
     "Capacity",
     "DayTour",
@@ -23,7 +22,6 @@ __all__ = [
     "Plan",
     "Provenance",
     "ReasonCode",
-    "RoadPoint",
     "StageCost",
     "Stop",
     "StopRule",
@@ -99,47 +97,6 @@ class Leg:
     path: tuple[tuple[float, float], ...] = ()
     roads: tuple[tuple[str, float], ...] = ()
     ferry: bool = False
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class RoadPoint:
-    """Where a base or a site meets the road: driving ends here, ``distance_m`` from the place.
-
-    It lies ``offset_m`` from the start of stretch ``stretch`` of the network; ``skipped`` tells of
-    a nearer road that was not taken.
-    """
-
-    place_id: str
-    lat_deg: float
-    lon_deg: float
-    distance_m: float
-    road: str
-    stretch: int
-    offset_m: float
-    skipped: str = ""
-
-
-class BackdropKind(StrEnum):
-    """What a line around the tours is. ``WATER`` is closed: the rim of a lake or a river bed."""
-
-    MAIN = "main road"
-    MINOR = "minor road"
-    LOCAL = "local road"
-    FERRY = "ferry"
-    COAST = "coast"
-    WATER = "water"
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class BackdropLine:
-    """A line to draw under the tours, with its name; ``path`` is (latitude, longitude).
-
-    On a coast the land lies to the left, as in OpenStreetMap.
-    """
-
-    kind: BackdropKind
-    name: str
-    path: tuple[tuple[float, float], ...]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

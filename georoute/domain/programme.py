@@ -57,7 +57,7 @@ class RoadSettings:
 
     ``path``: an OpenStreetMap extract or a table of edges. ``country`` (ISO 3166-1) chooses the
     speeds of roads without a limit; ``speeds_kmh`` replaces them by class of road.
-    ``time_factor``: real driving time as a multiple of the time at these speeds.
+    ``real_factors`` replaces, by class, the share of the limit that is really driven.
     ``snap_limit_m``: a place farther than this from every road is a fault. The size of the
     vehicle, where it is given, closes roads whose limits it breaks. ``columns`` maps the columns
     of a table of edges.
@@ -66,7 +66,7 @@ class RoadSettings:
     path: str
     country: str = ""
     speeds_kmh: Mapping[str, float] = field(default_factory=lambda: MappingProxyType({}))
-    time_factor: float = 1.0
+    real_factors: Mapping[str, float] = field(default_factory=lambda: MappingProxyType({}))
     snap_limit_m: float = 500.0
     vehicle_height_m: float | None = None
     vehicle_width_m: float | None = None

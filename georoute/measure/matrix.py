@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 from georoute.domain.programme import TravelMethod
 from georoute.domain.run import no_progress
-from georoute.errors import InputError, TableError
+from georoute.errors import InputError, RoadError, TableError
 from georoute.measure.estimate import estimate_straight, estimate_with_detour
 from georoute.measure.table import read_table
 from georoute.projection import local_plane
@@ -42,6 +42,8 @@ def measure(
     ------
     TableError
         The user's own table is not named or has faults; ``findings`` lists them all.
+    RoadError
+        The source of roads cannot be used.
     InputError
         A coordinate or a coefficient is unusable.
     """
@@ -56,12 +58,30 @@ def measure(
             raise TableError(msg)
         costs, of_table = read_table(travel.table_path, places)
         findings = (*findings, *of_table)
+    elif travel.method is TravelMethod.ROADS:
+        costs, of_roads = _on_roads(places, travel, progress)
+        findings = (*findings, *of_roads)
     elif travel.method is TravelMethod.DETOUR:
         costs = estimate_with_detour(places, travel.detour, progress=progress)
     else:
         costs = estimate_straight(places, travel, progress=progress)
     progress("measure", fraction=1.0)
     return costs, findings
+
+
+def _on_roads(
+    places: Places, travel: TravelSettings, progress: Progress
+) -> tuple[CostMatrix, tuple[Finding, ...]]:
+    # Roads bring libraries that the other methods do without.
+    from georoute.measure.on_roads import measure_on_roads  # noqa: PLC0415 - see above
+
+    if travel.roads is None:
+        msg = (
+            "Expected roads with the travel method 'roads', got none. Name an extract under "
+            "[travel.roads] in the programme."
+        )
+        raise RoadError(msg)
+    return measure_on_roads(places, travel.roads, progress=progress)
 
 
 def _span(places: Places) -> tuple[Finding, ...]:

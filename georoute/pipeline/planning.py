@@ -29,8 +29,9 @@ if TYPE_CHECKING:
 
     from georoute.domain.costs import CostMatrix
     from georoute.domain.findings import Finding
-    from georoute.domain.plan import Capacity, Exchange, ReasonCode
+    from georoute.domain.plan import Capacity, DayTour, Exchange, ReasonCode
     from georoute.domain.programme import Programme
+    from georoute.domain.roads import BackdropLine
     from georoute.domain.run import Progress, ShouldStop
     from georoute.domain.sites import Base, Register, Site
     from georoute.pipeline.search import Found
@@ -112,13 +113,14 @@ def _exchanges(found: Found) -> tuple[Exchange, ...]:
 def _assemble(prepared: Prepared, found: Found, *, budget: Budget, issued: datetime | None) -> Plan:
     packed, register, costs = prepared.packed, prepared.register, prepared.costs
     programme = packed.programme
+    tours = tours_of(packed, found.solution)
     reasons = explain_unplaced(packed.problem, found.solution, why_not=packed.why_not)
     return Plan(
         plan_id=_plan_id(programme, register),
         programme=programme,
         sites=register.sites,
         visits=register.visits,
-        tours=tours_of(packed, found.solution),
+        tours=tours,
         unplaced=_left_out(packed, reasons),
         capacity=prepared.capacity,
         travel=TravelNote(
@@ -143,7 +145,14 @@ def _assemble(prepared: Prepared, found: Found, *, budget: Budget, issued: datet
             issued=issued,
         ),
         extra_columns=register.extra_columns,
+        road_points=() if costs.ways is None else costs.ways.points(),
+        backdrop=_backdrop(costs, tours),
     )
+
+
+def _backdrop(costs: CostMatrix, tours: Iterable[DayTour]) -> tuple[BackdropLine, ...]:
+    ways = [leg.path for tour in tours for leg in tour.legs if leg.path]
+    return costs.ways.backdrop(ways) if costs.ways is not None and ways else ()
 
 
 def _check(plan: Plan) -> None:

@@ -22,6 +22,7 @@ if TYPE_CHECKING:
     from georoute.domain.costs import CostMatrix, Places, Tariff
     from georoute.domain.people import Shift
     from georoute.domain.programme import Programme
+    from georoute.domain.roads import Ways
     from georoute.domain.sites import Visit
 
 __all__ = ["Packed", "pack", "to_ticks"]
@@ -41,7 +42,8 @@ LONG_WAY_KM = 1_000.0
 class Packed:
     """The array problem together with what its indices stand for.
 
-    ``why_not`` (int8, (V, S)) holds a ``WhyNot`` code for each visit and shift.
+    ``why_not`` (int8, (V, S)) holds a ``WhyNot`` code for each visit and shift. ``ways`` knows how
+    legs between places are driven, where they were measured along roads.
     """
 
     problem: Problem
@@ -50,6 +52,7 @@ class Packed:
     shifts: tuple[Shift, ...]
     place_ids: tuple[str, ...]
     why_not: NDArray[np.int8]
+    ways: Ways | None = None
 
 
 def to_ticks(values: NDArray[np.float64] | float, per_unit: int) -> NDArray[np.int64]:
@@ -181,4 +184,5 @@ def pack(
         shifts=shifts,
         place_ids=costs.place_ids,
         why_not=codes,
+        ways=costs.ways,
     )

@@ -112,6 +112,7 @@ class Code(StrEnum):
     UNKNOWN_EFFORT = "unknown_effort"
     MISSING_TABLE = "missing_table"
     MISSING_ROADS = "missing_roads"
+    UNKNOWN_ROAD_CLASS = "unknown_road_class"
 
 
 _F, _W, _N = Severity.FAULT, Severity.WARNING, Severity.NOTE
@@ -204,6 +205,7 @@ CODE_MEANINGS: Mapping[Code, tuple[Severity, str]] = MappingProxyType(
         Code.UNKNOWN_AIM: (_F, "An aim that does not exist."),
         Code.UNKNOWN_EFFORT: (_F, "An effort that does not exist."),
         Code.MISSING_TABLE: (_F, "The travel method is `table` and no table is named."),
+        Code.UNKNOWN_ROAD_CLASS: (_F, "A class of road that does not exist."),
         Code.MISSING_ROADS: (_F, "The travel method is `roads` and no roads are named."),
     }
 )

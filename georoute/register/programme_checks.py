@@ -14,6 +14,7 @@ from georoute.register.codes import Code, nearest, nearest_words
 from georoute.register.columns import COLUMNS
 from georoute.register.people_checks import check_bases, check_inspectors
 from georoute.register.schema_faults import key_path
+from georoute.roads.speeds import ROAD_CLASSES
 
 if TYPE_CHECKING:
     from georoute.domain.people import WorkingCalendar
@@ -197,6 +198,16 @@ def _check_choices(parts: Parts, notebook: Notebook) -> None:
             at=("search", "aim"),
             value=parts.search.aim,
         )
+    for table in ("speeds", "real_factors"):
+        for name in getattr(parts.travel.roads, table):
+            if name not in ROAD_CLASSES:
+                notebook.add(
+                    Code.UNKNOWN_ROAD_CLASS,
+                    f"there is no class of road `{name}`",
+                    nearest_words(name, ROAD_CLASSES),
+                    at=("travel", "roads", table, name),
+                    value=name,
+                )
     if parts.search.effort not in EFFORTS:
         notebook.add(
             Code.UNKNOWN_EFFORT,

@@ -247,7 +247,7 @@ def _roads(folder: Path, path: str, section: TravelSection) -> RoadSettings:
         path=_beside(folder, path),
         country=roads.country.upper(),
         speeds_kmh=MappingProxyType(dict(roads.speeds)),
-        time_factor=roads.time_factor,
+        real_factors=MappingProxyType(dict(roads.real_factors)),
         snap_limit_m=roads.snap_limit_m,
         vehicle_height_m=roads.vehicle_height_m,
         vehicle_width_m=roads.vehicle_width_m,

@@ -308,9 +308,6 @@ class RoadsSection(Section):
         default="",
         description="Country whose speeds hold where the map has no limit (ISO 3166-1 code, `CL`).",
     )
-    time_factor: Number = _coefficient(
-        1.0, "Real driving time as a multiple of the time at the limits."
-    )
     snap_limit_m: Number = Field(
         default=500.0, gt=0.0, description="A site farther than this from every road is a fault."
     )
@@ -319,6 +316,10 @@ class RoadsSection(Section):
     vehicle_weight_t: _Size | None = Field(default=None, description="Weight of the vehicle.")
     speeds: dict[str, Number] = Field(
         default_factory=dict, description="Speeds by class of road, km/h: `residential = 30`."
+    )
+    real_factors: dict[str, Number] = Field(
+        default_factory=dict,
+        description="Share of the limit that is really driven, by class: `residential = 0.6`.",
     )
     columns: dict[str, Text] = Field(
         default_factory=dict,

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 import shapely
 
-from georoute.domain.plan import BackdropKind, BackdropLine
+from georoute.domain.roads import BackdropKind, BackdropLine
 from georoute.projection import local_plane
 from georoute.roads.model import Access
 
@@ -16,6 +16,7 @@ if TYPE_CHECKING:
 
     from numpy.typing import NDArray
 
+    from georoute.domain.roads import Way
     from georoute.projection import LocalPlane
     from georoute.roads.model import RoadTable
 
@@ -30,9 +31,6 @@ MARGIN_M = 2_000.0
 TOLERANCE_M = 3.0
 """How far a simplified line may lie from the road."""
 DIGITS = 6
-
-Way = tuple[tuple[float, float], ...]
-"""Corners as (latitude, longitude) in degrees."""
 
 
 def _kind(road_class: str) -> BackdropKind:

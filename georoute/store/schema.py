@@ -13,15 +13,14 @@ from typing import TYPE_CHECKING
 
 from georoute.domain.people import Inspector
 from georoute.domain.plan import (
-    BackdropLine,
     DayTour,
     Exchange,
     Leg,
-    RoadPoint,
     StageCost,
     Stop,
     Unplaced,
 )
+from georoute.domain.roads import BackdropLine, RoadPoint
 from georoute.domain.sites import Base, Site, Visit
 
 if TYPE_CHECKING:

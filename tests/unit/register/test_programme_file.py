@@ -112,7 +112,6 @@ high_factor = 1.25
 [travel.roads]
 path = "town.osm.pbf"
 country = "cl"
-time_factor = 1.2
 snap_limit_m = 250.0
 vehicle_height_m = 2.9
 vehicle_width_m = 2.1
@@ -120,6 +119,8 @@ vehicle_weight_t = 3.5
 
 [travel.roads.speeds]
 residential = 30.0
+[travel.roads.real_factors]
+track = 0.4
 
 [search]
 aim = "fewest_days"
@@ -187,7 +188,7 @@ def test_every_key_arrives(tmp_path: Path) -> None:
         path=str(tmp_path / "town.osm.pbf"),
         country="CL",
         speeds_kmh={"residential": 30.0},
-        time_factor=1.2,
+        real_factors={"track": 0.4},
         snap_limit_m=250.0,
         vehicle_height_m=2.9,
         vehicle_width_m=2.1,
@@ -251,8 +252,12 @@ def test_the_table_of_keys_is_whole() -> None:
     assert len({row.key for row in rows}) == len(rows)
     assert rows[0].key == "title"
     keys = {row.key.rpartition(" ")[2].rpartition(".")[2] for row in rows}
-    written = set(re.findall(r"^(\w+) = ", WHOLE, flags=re.MULTILINE)) | {"columns", "speeds"}
-    assert written - {"site_id", "residential"} == keys
+    written = set(re.findall(r"^(\w+) = ", WHOLE, flags=re.MULTILINE)) | {
+        "columns",
+        "speeds",
+        "real_factors",
+    }
+    assert written - {"site_id", "residential", "track"} == keys
     needed = {row.key for row in rows if row.default == "needed"}
     assert needed == {
         "zone",

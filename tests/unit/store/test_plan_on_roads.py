@@ -8,7 +8,8 @@ from pathlib import Path
 import geopandas as gpd
 import pytest
 
-from georoute.domain.plan import BackdropKind, BackdropLine, Plan, RoadPoint
+from georoute.domain.plan import Plan
+from georoute.domain.roads import BackdropKind, BackdropLine, RoadPoint
 from georoute.store import read_plan, write_plan
 from tests.store_helpers import example_plan
 

@@ -45,6 +45,46 @@ def draw_net(seed: int) -> Net:
     return Net(tail=tail, head=head, ms=ms, mm=mm, nodes=nodes)
 
 
+def grid_net(side: int, seed: int, *, one_way: float = 0.15, missing: float = 0.2) -> Net:
+    """Return a town of streets in a grid: side * side crossings, three classes of speed.
+
+    Crossings are jittered by a third of a block of 150 m; every 8th street is wider and every
+    32nd a main road, of which none is missing; streets are up to 30 % longer than straight.
+    Nodes are numbered along a curve that keeps neighbours close (Morton).
+    """
+    rng = np.random.default_rng(seed)
+    across, down = (axis.ravel() for axis in np.meshgrid(np.arange(side), np.arange(side)))
+    x, y = (150 * axis + rng.uniform(-50, 50, axis.size) for axis in (across, down))
+    number = np.empty(side * side, np.int64)
+    number[np.argsort(_interleave(across) | _interleave(down) << 1)] = np.arange(side * side)
+    index = np.arange(side * side).reshape(side, side)
+    start = np.concatenate((index[:, :-1].ravel(), index[:-1].ravel()))
+    end = np.concatenate((index[:, 1:].ravel(), index[1:].ravel()))
+    street = np.where(start + 1 == end, down[start], across[start])
+    road = np.where(street % 32 == 0, 0, np.where(street % 8 == 0, 1, 2))
+    kept = (road < 2) | (rng.random(road.size) >= missing)
+    start, end, road = start[kept], end[kept], road[kept]
+    metres = np.hypot(x[start] - x[end], y[start] - y[end]) * rng.uniform(1, 1.3, road.size)
+    kmh = np.array([90.0, 55.0, 30.0])[road] * rng.uniform(0.8, 1.1, road.size)
+    mm, ms = (metres * 1000).astype(np.int64), (metres * 3600 / kmh).astype(np.int64)
+    both = rng.random(road.size) >= one_way
+    return Net(
+        tail=number[np.concatenate((start, end[both]))],
+        head=number[np.concatenate((end, start[both]))],
+        ms=np.concatenate((ms, ms[both])),
+        mm=np.concatenate((mm, mm[both])),
+        nodes=side * side,
+    )
+
+
+def _interleave(axis: NDArray[np.int64]) -> NDArray[np.int64]:
+    """Put a zero bit between all bits of numbers below 2^16."""
+    spread = np.zeros_like(axis)
+    for bit in range(16):
+        spread |= (axis >> bit & 1) << (2 * bit)
+    return spread
+
+
 def draw_seeds(net: Net, places: int, seed: int) -> Seeds:
     """None to three nodes a place, with offsets; one in ten is out of reach."""
     rng = np.random.default_rng([seed, places])

@@ -99,7 +99,7 @@ def _want(ends: Starts, first: Int, last: Int, wanted: NDArray[np.uint8]) -> Int
 def _best_end(reached: Reached, ends: Starts, place: Int) -> tuple[Int, Int]:
     """Return the least cost to a place and the number of the seed it comes over."""
     best: Int = np.int64(FAR)
-    seed = np.int64(-1)
+    seed: Int = np.int64(-1)
     for s in range(ends.ptr[place], ends.ptr[place + 1]):
         cost = reached.state[ends.node[s], KEY] + ends.cost[s]
         if ends.cost[s] < FAR and cost < best:  # the sum of two that are out of reach runs over

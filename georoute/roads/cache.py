@@ -153,7 +153,7 @@ def cached_roads(
     damage = None
     try:
         return _load(path, key)
-    except FileNotFoundError:
+    except (FileNotFoundError, NotADirectoryError):
         pass
     except _DAMAGE as error:
         damage = f"{type(error).__name__}: {error}"
@@ -222,7 +222,7 @@ def _load(path: Path, key: str) -> BuiltRoads:
     ValueError
         The file is of other roads.
     """
-    with np.load(path, allow_pickle=False) as file:
+    with path.open("rb") as stream, np.load(stream, allow_pickle=False) as file:
         arrays = {name: file[name] for name in file.files}  # each is checked against its sum
     about = json.loads(arrays["about"].tobytes())
     if about["key"] != key:

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 from pyproj import Geod
 
+from georoute.audit.on_roads import MeasuredOnRoads
 from georoute.audit.own_table import OwnTable
 from georoute.domain.programme import TravelMethod
 
@@ -62,6 +63,9 @@ class Ruler:
         self._points: dict[str, Point] = {b.base_id: (b.lat_deg, b.lon_deg) for b in bases}
         self._points |= {s.site_id: (s.lat_deg, s.lon_deg) for s in sites}
         self._table: OwnTable | None = None
+        self._roads: MeasuredOnRoads | None = None
+        if self._travel.method is TravelMethod.ROADS:
+            self._roads = MeasuredOnRoads.find(plan, report)
         if self._travel.method is TravelMethod.TABLE:
             self._table = OwnTable.find(
                 self._travel.table_path, beside=plan.programme.source, report=report
@@ -73,6 +77,8 @@ class Ruler:
             return None
         if self._travel.method is TravelMethod.TABLE:
             return None if self._table is None else self._table.leg(from_id, to_id)
+        if self._travel.method is TravelMethod.ROADS:
+            return None if self._roads is None else self._roads.leg(from_id, to_id)
         a, b = self._points[from_id], self._points[to_id]
         if self._travel.method is TravelMethod.DETOUR:
             return _detour(self._travel.detour, _geodesic_m(a, b))

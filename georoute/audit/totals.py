@@ -110,7 +110,7 @@ def _check_stages(plan: Plan, report: Report) -> None:
 def _check_travel(plan: Plan, report: Report) -> None:
     """Check that estimates are called so, with the interval of their model."""
     settings, note = plan.programme.travel, plan.travel
-    estimated = settings.method is not TravelMethod.TABLE
+    estimated = settings.method not in {TravelMethod.TABLE, TravelMethod.ROADS}
     if note.estimated != estimated:
         report.fault(
             "travel_note",

@@ -194,12 +194,18 @@ class StageCost:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class TravelNote:
-    """What the travel figures are: their source in words, whether estimated, and the interval."""
+    """What the travel figures are: their source in words, whether estimated, and the interval.
+
+    ``network`` names the file of the road network in the cache, and ``credit`` whom the licence
+    of its data asks to be named.
+    """
 
     source: str
     estimated: bool
     low_factor: float = 1.0
     high_factor: float = 1.0
+    network: str = ""
+    credit: str = ""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -64,7 +64,13 @@ class BackdropLine:
 
 
 class Ways(Protocol):
-    """Knows how the legs of a table of travel are driven; places are indices into the table."""
+    """Knows how the legs of a table of travel are driven; places are indices into the table.
+
+    ``network`` and ``credit``: see ``TravelNote`` of a plan.
+    """
+
+    network: str
+    credit: str
 
     def legs(self, pairs: Sequence[tuple[int, int]]) -> tuple[LegShape, ...]:
         """Return the shape of each leg."""

@@ -54,8 +54,10 @@ NO_NAME = "a road without a name"
 class _WaysOnRoads:
     """How the legs between places on roads are driven."""
 
-    def __init__(self, travel: RoadTravel, told: _Told) -> None:
+    def __init__(self, travel: RoadTravel, told: _Told, network: str) -> None:
         self._travel, self._told = travel, told
+        self.network = network
+        self.credit = travel.network.table.credit
 
     def legs(self, pairs: Sequence[tuple[int, int]]) -> tuple[LegShape, ...]:
         """Return the shape of each leg; one without a way has an empty path."""
@@ -320,13 +322,12 @@ def measure_on_roads(
         length_m=_in_units(mm, MM_PER_M),
         source=_source(built.network.table, settings),
         estimated=False,
-        ways=_WaysOnRoads(travel, told),
+        ways=_WaysOnRoads(travel, told, built.file_name),
     )
     circuity = _circuity(places, mm, settings)
     return costs, (*told.far(), *told.cut_off(ms), *circuity, *told.remarks())
 
 
 def _source(table: RoadTable, settings: RoadSettings) -> str:
-    credit = f" ({table.credit})" if table.credit else ""
     country = f" of {settings.country}" if settings.country else ""
-    return f"roads of {table.source}{credit} at the real share of limits and class speeds{country}"
+    return f"roads of {table.source} at the real share of limits and class speeds{country}"

@@ -128,6 +128,8 @@ def _assemble(prepared: Prepared, found: Found, *, budget: Budget, issued: datet
             estimated=costs.estimated,
             low_factor=costs.low_factor,
             high_factor=costs.high_factor,
+            network="" if costs.ways is None else costs.ways.network,
+            credit="" if costs.ways is None else costs.ways.credit,
         ),
         stages=tuple(
             StageCost(stage=stage, cost=cost, placed=placed) for stage, cost, placed in found.stages

@@ -59,11 +59,15 @@ _Rows = TypeVar("_Rows", RoadTable, RoadNetwork)
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class BuiltRoads:
-    """A network and its hierarchy. ``kept``: whether they came from the cache."""
+    """A network and its hierarchy.
+
+    ``kept``: whether they came from the cache. ``file_name``: their file there; empty: none.
+    """
 
     network: RoadNetwork
     hierarchy: Hierarchy
     kept: bool = False
+    file_name: str = ""
 
 
 def _plain(value: object) -> object:
@@ -152,7 +156,7 @@ def cached_roads(
         return _with_remark(build_roads(read(), progress=progress), "cache_missing", str(error))
     damage = None
     try:
-        return _load(path, key)
+        return replace(_load(path, key), file_name=path.name)
     except (FileNotFoundError, NotADirectoryError):
         pass
     except _DAMAGE as error:
@@ -160,6 +164,7 @@ def cached_roads(
     built = build_roads(read(), progress=progress)
     try:
         _save(path, key, built)
+        built = replace(built, file_name=path.name)
     except OutputError as error:
         built = _with_remark(built, "cache_missing", str(error))
     if damage is not None:
@@ -171,7 +176,7 @@ def cached_roads(
 def _with_remark(built: BuiltRoads, code: str, text: str, example: str = "") -> BuiltRoads:
     remark = RoadRemark(code=code, count=1, text=text, example=example)
     network = replace(built.network, remarks=(*built.network.remarks, remark))
-    return BuiltRoads(network=network, hierarchy=built.hierarchy)
+    return replace(built, network=network)
 
 
 def _parts(

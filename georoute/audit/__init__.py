@@ -14,6 +14,7 @@ from georoute.audit.remeasure import Ruler
 from georoute.audit.report import Report
 from georoute.audit.totals import check_totals
 from georoute.audit.tours import check_tours
+from georoute.audit.ways import check_ways
 
 if TYPE_CHECKING:
     from georoute.domain.findings import Finding
@@ -28,7 +29,8 @@ def audit(plan: Plan) -> tuple[Finding, ...]:
     Checked are: ids; that every visit is once in a tour or among the unplaced; inspector, date,
     bases, opening times, eligibility and load of every tour; every clock time; every leg measured
     again (within 5 ms and 5 mm plus 3e-6 of the leg); sums, overtime and money (within 0.001 of
-    the currency); latest arrivals; capacity, stages and the log of exchanges.
+    the currency); latest arrivals; capacity, stages and the log of exchanges. Legs along roads
+    are measured again on the network that is kept, and their ways for themselves.
 
     Parameters
     ----------
@@ -38,7 +40,8 @@ def audit(plan: Plan) -> tuple[Finding, ...]:
     Returns
     -------
     tuple of Finding
-        Faults for breaches; a warning where the user's own travel table is no longer at hand.
+        Faults for breaches; a warning where the user's own travel table, or the road network, is
+        no longer at hand.
     """
     report = Report()
     check_ids(plan, report)
@@ -46,5 +49,6 @@ def audit(plan: Plan) -> tuple[Finding, ...]:
     ruler = Ruler(plan, report)
     check_tours(plan, ruler, report)
     check_exchanges(plan, ruler, report)
+    check_ways(plan, report)
     check_totals(plan, report)
     return report.findings

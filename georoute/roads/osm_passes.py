@@ -108,28 +108,25 @@ class _Judge:
         self.names = {"": 0}
         self._known: dict[str, int] = {}
 
-    def rule(self, parts: list[str]) -> int:
-        """Return the number of the rule for a way's tags, each as ``key=value`` in OPL."""
-        telling = [part for part in parts if part.partition("=")[0] in RELEVANT_KEYS]
+    def rule(self, tag_text: str) -> int:
+        """Return the number of the rule for a way's tags, as OPL writes them."""
+        telling = [part for part in tag_text.split(",") if part[: part.find("=")] in RELEVANT_KEYS]
         text = ",".join(telling)
         number = self._known.get(text)
         if number is None:
-            pairs = (part.partition("=") for part in telling)
-            tags = {key: _plain(value) for key, _, value in pairs}
             number = self._known[text] = len(self.rules)
-            self.rules.append(judge_way(tags, profile=self.profile))
+            self.rules.append(judge_way(_tags_of(text), profile=self.profile))
         return number
 
-    def name(self, parts: list[str]) -> int:
+    def name(self, tag_text: str) -> int:
         """Return the number of a way's name, or of its reference where it has none."""
-        found = ""
-        for part in parts:
-            if part.startswith("name="):
-                found = part[5:]
-                break
-            if part.startswith("ref="):
-                found = part[4:]
-        return self.names.setdefault(_plain(found), len(self.names))
+        text = f",{tag_text},"
+        for key in (",name=", ",ref="):
+            at = text.find(key)
+            if at >= 0:
+                found = text[at + len(key) : text.index(",", at + 1)]
+                return self.names.setdefault(_plain(found), len(self.names))
+        return 0
 
 
 def _plain(text: str) -> str:
@@ -225,25 +222,25 @@ def _texts(path: Path, folder: Path) -> Iterator[str]:
             yield from lines
 
 
-def _fields(line: str) -> tuple[int, list[str], str]:
-    """Return the id, the tags as ``key=value``, and what follows the tags, of a line of OPL."""
+def _fields(line: str) -> tuple[int, str, str]:
+    """Return the id, the tags as ``key=value,key=value``, and the rest of a line of OPL."""
     head, _, rest = line.rstrip("\n").partition(" T")
-    tags, _, after = rest.partition(" ")
-    return int(head[1:]), tags.split(","), after
+    tag_text, _, after = rest.partition(" ")
+    return int(head[1:]), tag_text, after
 
 
-def _tags_of(parts: list[str]) -> dict[str, str]:
-    pairs = (part.partition("=") for part in parts)
+def _tags_of(tag_text: str) -> dict[str, str]:
+    pairs = (part.partition("=") for part in tag_text.split(","))
     return {_plain(key): _plain(value) for key, _, value in pairs}
 
 
 def _restriction(line: str) -> RawRestriction:
-    number, parts, after = _fields(line)
+    number, tag_text, after = _fields(line)
     members = []
     for member in after[1:].split(",") if len(after) > 1 else ():
         ref, _, role = member.partition("@")
         members.append((ref[0], int(ref[1:]), _plain(role)))
-    return RawRestriction(number, _tags_of(parts), members)
+    return RawRestriction(number, _tags_of(tag_text), members)
 
 
 class _Nodes:
@@ -256,8 +253,8 @@ class _Nodes:
 
     def take(self, line: str) -> None:
         """Judge the barrier of a line of OPL."""
-        number, parts, _ = _fields(line)
-        tags = _tags_of(parts)
+        number, tag_text, _ = _fields(line)
+        tags = _tags_of(tag_text)
         barrier = judge_barrier(tags, profile=self.profile)
         if barrier is Barrier.UNKNOWN:
             self.unknown[number] = tags["barrier"]
@@ -269,13 +266,13 @@ def _judge_ways(lines: list[str], judge: _Judge, points: _Points) -> None:
     """Judge ways, a line of OPL each, and take the points of those for cars."""
     heads, texts = array("q"), []
     for line in lines:
-        number, parts, nodes = _fields(line)
-        rule = judge.rule(parts)
+        number, tag_text, nodes = _fields(line)
+        rule = judge.rule(tag_text)
         left_out = judge.rules[rule].left_out
         if left_out:
             judge.tally.add(left_out, f"way {number}")
             continue
-        heads.extend((number, rule, judge.name(parts)))
+        heads.extend((number, rule, judge.name(tag_text)))
         texts.append(nodes[1:])
     points.add(np.frombuffer(heads, np.int64).reshape(-1, 3), texts)
 

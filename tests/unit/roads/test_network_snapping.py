@@ -162,8 +162,8 @@ def test_what_is_worth_telling_is_told() -> None:
             0,
             False,
             (
-                "put on Calle Sur, 25 m away; Pasaje Solo is nearer (5 m), but no way leads from it "
-                "to the main roads or back; 2 junctions hang together there"
+                "put on Calle Sur, 25 m away; Pasaje Solo is nearer (5 m), but no way leads from "
+                "it to the main roads or back; 2 junctions hang together there"
             ),
         ),
         (1, True, "no road that trips can use within 500 m"),

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import heapq
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -173,7 +174,9 @@ def scipy_times(net: Net) -> NDArray[np.int64]:
     """
     kept = cheapest_arcs(net)
     weights = net.ms[kept].astype(np.float64) * 2**20 + 1
-    graph = csr_array((weights, (net.tail[kept], net.head[kept])), shape=(net.nodes, net.nodes))
+    graph: Any = csr_array(
+        (weights, (net.tail[kept], net.head[kept])), shape=(net.nodes, net.nodes)
+    )
     found = np.asarray(dijkstra(graph))
     times = np.floor(np.where(np.isinf(found), 0, found) / 2**20).astype(np.int64)
     return np.where(np.isinf(found), UNREACHABLE, times)

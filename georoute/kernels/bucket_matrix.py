@@ -12,9 +12,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from georoute.kernels._jit import Int, kernel
+from georoute.kernels.arrays import UNREACHABLE
 from georoute.kernels.hierarchy_store import Hierarchy
 from georoute.kernels.node_heap import KEY, PLACE
-from georoute.kernels.road_cost import FAR
+from georoute.kernels.road_cost import FAR, MM_BITS, MOST_MM
 from georoute.kernels.upward import STALLED, Reached, Starts, climb, forget
 from georoute.kernels.witness import LOW
 
@@ -174,9 +175,10 @@ def read_word(
     order: NDArray[np.int64],
     buckets: Buckets,
     lanes: Lanes,
-    cost: NDArray[np.int64],
+    ms: NDArray[np.int64],
+    mm: NDArray[np.int64],
 ) -> None:
-    """Search forward from the sources of ``order``; fill their rows of ``cost``.
+    """Search forward from the sources of ``order``; fill their rows of ``ms`` and ``mm``.
 
     Sources that follow one another read together: the better the nearer they are. The columns
     filled are those of the targets with word, from ``buckets.base`` on.
@@ -196,4 +198,8 @@ def read_word(
             _lower(block, buckets.target[word], buckets.cost[word], lanes.cost[m])
         for t in range(buckets.many):
             for k in range(first, last):
-                cost[order[k], buckets.base + t] = block[t, k - first]
+                value = block[t, k - first]
+                p = order[k]
+                far = value >= FAR
+                ms[p, buckets.base + t] = UNREACHABLE if far else value >> MM_BITS
+                mm[p, buckets.base + t] = UNREACHABLE if far else value & MOST_MM

@@ -11,7 +11,7 @@ from georoute.domain.run import no_progress
 from georoute.kernels.arrays import UNREACHABLE
 from georoute.kernels.bucket_matrix import LANES, Buckets, Lanes, leave_word, read_word, sort_word
 from georoute.kernels.hierarchy_store import Hierarchy
-from georoute.kernels.road_cost import FAR, MM_BITS, MOST_MM, split_costs
+from georoute.kernels.road_cost import FAR, MM_BITS, MOST_MM
 from georoute.kernels.road_paths import ARCS, COST, SOURCE_SEED, TARGET_SEED, find_paths
 from georoute.kernels.upward import Reached, Starts
 from georoute.roads.contracting import build_hierarchy, pack_costs
@@ -128,7 +128,7 @@ def matrix(
     starts = pack_seeds(sources, nodes, hierarchy.rank)
     ends = pack_seeds(targets, nodes, hierarchy.rank)
     rows, columns = sources.ptr.size - 1, targets.ptr.size - 1
-    cost = np.empty((rows, columns), np.int64)
+    ms, mm = np.empty((rows, columns), np.int64), np.empty((rows, columns), np.int64)
     reached = empty_search(nodes)
     order = _neighbours(sources)
     lanes = Lanes(
@@ -141,13 +141,11 @@ def matrix(
         buckets = _buckets(hierarchy, reached, ends, first)
         for p in range(0, rows, CHUNK):
             part = order[p : p + CHUNK]
-            read_word(hierarchy, reached, starts, part, buckets, lanes, cost)
+            read_word(hierarchy, reached, starts, part, buckets, lanes, ms, mm)
             done = first * rows + (p + part.size) * buckets.many
-            progress(MATRIX_STAGE, fraction=done / cost.size)
+            progress(MATRIX_STAGE, fraction=done / ms.size)
         first += buckets.many
-    mm = np.empty_like(cost)
-    split_costs(cost, mm)
-    return cost, mm
+    return ms, mm
 
 
 def _neighbours(seeds: Seeds) -> NDArray[np.int64]:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import heapq
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -156,19 +157,26 @@ def _part(seeds: Seeds, place: int) -> tuple[NDArray[np.int64], ...]:
     return seeds.node[part], seeds.ms[part], seeds.mm[part]
 
 
+def cheapest_arcs(net: Net) -> NDArray[np.int64]:
+    """Return the numbers of the fastest open arc of each pair of different nodes."""
+    some = np.flatnonzero((net.ms < UNREACHABLE) & (net.tail != net.head))
+    order = some[np.lexsort((net.ms[some], net.head[some], net.tail[some]))]
+    first = np.ones(order.size, np.bool_)
+    first[1:] = (np.diff(net.tail[order]) != 0) | (np.diff(net.head[order]) != 0)
+    return order[first]
+
+
 def scipy_times(net: Net) -> NDArray[np.int64]:
     """Return the times between all nodes by scipy.
 
     It drops zeros and adds duplicates up: so the fastest arc of each pair only, and every time
     times 2^20 plus 1, which the division takes off again (paths have far fewer arcs).
     """
-    open_arcs = np.flatnonzero((net.ms < UNREACHABLE) & (net.tail != net.head))
-    order = open_arcs[np.lexsort((net.ms[open_arcs], net.head[open_arcs], net.tail[open_arcs]))]
-    first = np.ones(order.size, np.bool_)
-    first[1:] = (np.diff(net.tail[order]) != 0) | (np.diff(net.head[order]) != 0)
-    kept = order[first]
+    kept = cheapest_arcs(net)
     weights = net.ms[kept].astype(np.float64) * 2**20 + 1
-    graph = csr_array((weights, (net.tail[kept], net.head[kept])), shape=(net.nodes, net.nodes))
+    graph: Any = csr_array(
+        (weights, (net.tail[kept], net.head[kept])), shape=(net.nodes, net.nodes)
+    )
     found = np.asarray(dijkstra(graph))
     times = np.floor(np.where(np.isinf(found), 0, found) / 2**20).astype(np.int64)
     return np.where(np.isinf(found), UNREACHABLE, times)

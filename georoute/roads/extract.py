@@ -112,7 +112,7 @@ def _no_roads(path: Path, raw: RawRoads, within: Box | None, tally: Tally) -> Ro
             "data (an editor's draft has negative ones)"
         )
     else:
-        found = left or "no way with the tag highway"
+        found = left or "no way that its tags make a road for cars"
         remedy = "give an extract with roads"
     msg = f"{path}: holds no road for cars; found: {found}; {remedy}"
     return RoadError(msg)

@@ -9,9 +9,9 @@ import numpy as np
 
 from georoute.domain.run import no_progress
 from georoute.kernels.arrays import UNREACHABLE
-from georoute.kernels.bucket_matrix import leave_word, read_word, sort_word
+from georoute.kernels.bucket_matrix import LANES, Buckets, Lanes, leave_word, read_word, sort_word
 from georoute.kernels.hierarchy_store import Hierarchy
-from georoute.kernels.road_cost import FAR, MM_BITS, MOST_MM, split_costs
+from georoute.kernels.road_cost import FAR, MM_BITS, MOST_MM
 from georoute.kernels.road_paths import ARCS, COST, SOURCE_SEED, TARGET_SEED, find_paths
 from georoute.kernels.upward import Reached, Starts
 from georoute.roads.contracting import build_hierarchy, pack_costs
@@ -128,26 +128,36 @@ def matrix(
     starts = pack_seeds(sources, nodes, hierarchy.rank)
     ends = pack_seeds(targets, nodes, hierarchy.rank)
     rows, columns = sources.ptr.size - 1, targets.ptr.size - 1
-    cost = np.full((rows, columns), FAR, np.int64)
+    ms, mm = np.empty((rows, columns), np.int64), np.empty((rows, columns), np.int64)
     reached = empty_search(nodes)
+    order = _neighbours(sources)
+    lanes = Lanes(
+        slot=np.full(nodes, -1, np.int32),
+        node=np.empty(nodes, np.int64),
+        cost=np.empty((nodes, LANES), np.int64),
+    )
     first = 0
     while first < columns:
-        buckets, last = _buckets(hierarchy, reached, ends, first)
-        part = cost[:, first:last]
+        buckets = _buckets(hierarchy, reached, ends, first)
         for p in range(0, rows, CHUNK):
-            stop = min(rows, p + CHUNK)
-            read_word(hierarchy, reached, starts, p, stop, *buckets, part)
-            progress(MATRIX_STAGE, fraction=(first * rows + stop * (last - first)) / cost.size)
-        first = last
-    mm = np.empty_like(cost)
-    split_costs(cost, mm)
-    return cost, mm
+            part = order[p : p + CHUNK]
+            read_word(hierarchy, reached, starts, part, buckets, lanes, ms, mm)
+            done = first * rows + (p + part.size) * buckets.many
+            progress(MATRIX_STAGE, fraction=done / ms.size)
+        first += buckets.many
+    return ms, mm
 
 
-def _buckets(
-    hierarchy: Hierarchy, reached: Reached, ends: Starts, first: int
-) -> tuple[tuple[NDArray[np.int64], NDArray[np.uint32], NDArray[np.int64]], int]:
-    """Return the buckets of targets from ``first`` on, and the first that did not fit."""
+def _neighbours(seeds: Seeds) -> NDArray[np.int64]:
+    """Return all places in the order of their nodes, which is spatial in a road network."""
+    if not seeds.node.size:
+        return np.arange(seeds.ptr.size - 1)
+    node = seeds.node[np.minimum(seeds.ptr[:-1], seeds.node.size - 1)]
+    return np.argsort(node, kind="stable").astype(np.int64)
+
+
+def _buckets(hierarchy: Hierarchy, reached: Reached, ends: Starts, first: int) -> Buckets:
+    """Return the buckets of targets from ``first`` on, as many as have room."""
     columns = ends.ptr.size - 1
     nodes = hierarchy.rank.size
     room = min(WORD, (columns - first) * nodes) + nodes
@@ -164,7 +174,7 @@ def _buckets(
     target = np.empty(len(word), np.uint32)
     cost = np.empty(len(word), np.int64)
     sort_word(word, ptr, target, cost)
-    return (ptr, target, cost), last
+    return Buckets(ptr=ptr, target=target, cost=cost, base=first, many=last - first)
 
 
 def path(hierarchy: Hierarchy, sources: Seeds, i: int, targets: Seeds, j: int) -> RoadPath:

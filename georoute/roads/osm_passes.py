@@ -1,9 +1,12 @@
-"""The passes over an OpenStreetMap file: nodes, ways, turn restrictions; whatever their order.
+"""One pass over an OpenStreetMap file: barriers, ways for cars, turn restrictions.
 
-Every file is read by pyosmium. The ways of roads pass from it as lines of text, in the format OPL
+Files are read by pyosmium. What is wanted passes from it as lines of text, in the format OPL
 (https://osmcode.org/opl-file-format/): the tags of a way as objects of Python take about 50
 microseconds, as text about 3. Node locations lie in a sorted array of 16 bytes a node; a filter of
 wanted ids was measured to take gigabytes, as the ids of real nodes are scattered.
+
+Nodes come before ways in files that say they are sorted. Where a file does not say so and ways
+lack nodes, its ways are read once more, when the locations of all nodes are known.
 """
 
 from __future__ import annotations
@@ -19,8 +22,12 @@ import numpy as np
 import osmium
 
 from georoute.errors import RoadError
+from georoute.roads.speeds import ROAD_CLASSES
 from georoute.roads.tags import (
+    LOCAL_VALUES,
+    OPEN_VALUES,
     RELEVANT_KEYS,
+    SHUT_VALUES,
     Barrier,
     WayRule,
     judge_barrier,
@@ -49,8 +56,14 @@ _NOWHERE = 999.0
 _TEXT_FORMAT = "opl,add_metadata=false,locations_on_ways=true"
 _TO_NUMBERS = str.maketrans("nxy,", "    ")
 _ESCAPE = re.compile("%([0-9a-f]+)%")
-_ON_FOOT = re.compile("(?:^|,)highway=(?:footway|path|steps|cycleway|bridleway)(?:,|$)")
-"""Most ways of a town: told from roads before their tags are taken apart."""
+_LACKS_NODE = re.compile(r"[Nn,]n\d+xy")
+_FOR_CARS = sorted((OPEN_VALUES | LOCAL_VALUES) - SHUT_VALUES)
+_WAYS = (
+    *(("highway", value) for value in (*ROAD_CLASSES, "construction")),
+    *((key, value) for key in ("motorcar", "motor_vehicle") for value in _FOR_CARS),
+    ("route", "ferry"),
+)
+"""Tags of ways worth a look; most ways of a town are for people on foot and have none of them."""
 
 
 class RawRestriction(NamedTuple):
@@ -95,28 +108,25 @@ class _Judge:
         self.names = {"": 0}
         self._known: dict[str, int] = {}
 
-    def rule(self, parts: list[str]) -> int:
-        """Return the number of the rule for a way's tags, each as ``key=value`` in OPL."""
-        telling = [part for part in parts if part.partition("=")[0] in RELEVANT_KEYS]
+    def rule(self, tag_text: str) -> int:
+        """Return the number of the rule for a way's tags, as OPL writes them."""
+        telling = [part for part in tag_text.split(",") if part[: part.find("=")] in RELEVANT_KEYS]
         text = ",".join(telling)
         number = self._known.get(text)
         if number is None:
-            pairs = (part.partition("=") for part in telling)
-            tags = {key: _plain(value) for key, _, value in pairs}
             number = self._known[text] = len(self.rules)
-            self.rules.append(judge_way(tags, profile=self.profile))
+            self.rules.append(judge_way(_tags_of(text), profile=self.profile))
         return number
 
-    def name(self, parts: list[str]) -> int:
+    def name(self, tag_text: str) -> int:
         """Return the number of a way's name, or of its reference where it has none."""
-        found = ""
-        for part in parts:
-            if part.startswith("name="):
-                found = part[5:]
-                break
-            if part.startswith("ref="):
-                found = part[4:]
-        return self.names.setdefault(_plain(found), len(self.names))
+        text = f",{tag_text},"
+        for key in (",name=", ",ref="):
+            at = text.find(key)
+            if at >= 0:
+                found = text[at + len(key) : text.index(",", at + 1)]
+                return self.names.setdefault(_plain(found), len(self.names))
+        return 0
 
 
 def _plain(text: str) -> str:
@@ -163,70 +173,123 @@ class _Points:
         self.rows.append(rows)
 
 
-def _read_nodes(
-    path: Path, locations: Any, profile: SpeedProfile  # noqa: ANN401 - pyosmium has no types here
-) -> tuple[dict[int, Barrier], dict[int, str]]:  # fmt: skip
-    """Fill the locations; return the barriers that are not open, and the kinds of unknown ones."""
-    barriers: dict[int, Barrier] = {}
-    unknown: dict[int, str] = {}
-    tagged = osmium.filter.KeyFilter("barrier")
-    with osmium.io.Reader(str(path), osmium.osm.NODE) as reader:
-        for node in osmium.OsmFileIterator(reader, locations, tagged):
-            tags = {tag.k: tag.v for tag in node.tags}
-            barrier = judge_barrier(tags, profile=profile)
-            if barrier is Barrier.UNKNOWN:
-                unknown[node.id] = tags["barrier"]
-            elif barrier is not Barrier.OPEN:
-                barriers[node.id] = barrier
-    return barriers, unknown
+def _filters(*, ways_only: bool = False) -> list[Any]:
+    """Return filters that let barriers, ways that may be for cars, and restrictions through."""
+    ways = osmium.filter.TagFilter(*_WAYS)
+    ways.enable_for(osmium.osm.WAY)
+    if ways_only:
+        return [ways]
+    barriers = osmium.filter.KeyFilter("barrier")
+    barriers.enable_for(osmium.osm.NODE)
+    turns = osmium.filter.TagFilter(("type", "restriction"))
+    turns.enable_for(osmium.osm.RELATION)
+    return [barriers, ways, turns]
 
 
-def _write_ways(path: Path, locations: Any, text: Path) -> None:  # noqa: ANN401 - as above
-    """Write all ways that may be roads or ferries as lines of OPL."""
-    roads = osmium.filter.KeyFilter("highway", "route")
+def _write_text(path: Path, text: Path, locations: Any, *, ways_only: bool = False) -> bool:  # noqa: ANN401 - pyosmium's handlers have no common type
+    """Write what is wanted of a file as lines of OPL; tell whether the file says it is sorted."""
+    filters = _filters(ways_only=ways_only)
+    kinds = osmium.osm.WAY if ways_only else osmium.osm.ALL
     writer = osmium.SimpleWriter(osmium.io.File(str(text), _TEXT_FORMAT))
     try:
-        with osmium.io.Reader(str(path), osmium.osm.WAY) as reader:
-            osmium.apply(reader, locations, roads, writer)
+        with osmium.io.Reader(str(path), kinds) as reader:
+            is_sorted = reader.header().get("sorting") == "Type_then_ID"
+            osmium.apply(reader, locations, *filters, writer)
     finally:
         writer.close()
+    return bool(is_sorted)
 
 
-def _judged_lines(lines: Iterator[str], judge: _Judge, points: _Points) -> None:
-    """Read ways from lines of OPL, a chunk at a time."""
-    counted = judge.tally.add
+def _texts(path: Path, folder: Path) -> Iterator[str]:
+    """Yield the lines of OPL of a file, made in a folder."""
+    kind = "mem" if path.stat().st_size <= LOCATIONS_IN_MEMORY_UP_TO else "file"
+    table = osmium.index.create_map(f"sparse_{kind}_array")
+    locations = osmium.NodeLocationsForWays(table)
+    locations.ignore_errors()
+    first, again = folder / "all.opl", folder / "ways.opl"
+    is_sorted = _write_text(path, first, locations)
+    once_more = False
+    if not is_sorted:
+        with first.open(encoding="utf-8") as lines:
+            once_more = any(line[0] == "w" and _LACKS_NODE.search(line) for line in lines)
+    if once_more:
+        _write_text(path, again, locations, ways_only=True)
+    del locations, table  # the text is all that is needed from here on
+    with first.open(encoding="utf-8") as lines:
+        yield from (line for line in lines if not once_more or line[0] != "w")
+    if once_more:
+        with again.open(encoding="utf-8") as lines:
+            yield from lines
+
+
+def _fields(line: str) -> tuple[int, str, str]:
+    """Return the id, the tags as ``key=value,key=value``, and the rest of a line of OPL."""
+    head, _, rest = line.rstrip("\n").partition(" T")
+    tag_text, _, after = rest.partition(" ")
+    return int(head[1:]), tag_text, after
+
+
+def _tags_of(tag_text: str) -> dict[str, str]:
+    pairs = (part.partition("=") for part in tag_text.split(","))
+    return {_plain(key): _plain(value) for key, _, value in pairs}
+
+
+def _restriction(line: str) -> RawRestriction:
+    number, tag_text, after = _fields(line)
+    members = []
+    for member in after[1:].split(",") if len(after) > 1 else ():
+        ref, _, role = member.partition("@")
+        members.append((ref[0], int(ref[1:]), _plain(role)))
+    return RawRestriction(number, _tags_of(tag_text), members)
+
+
+class _Nodes:
+    """Barriers that are not open, and the kinds of those that are unknown, by node."""
+
+    def __init__(self, profile: SpeedProfile) -> None:
+        self.profile = profile
+        self.barriers: dict[int, Barrier] = {}
+        self.unknown: dict[int, str] = {}
+
+    def take(self, line: str) -> None:
+        """Judge the barrier of a line of OPL."""
+        number, tag_text, _ = _fields(line)
+        tags = _tags_of(tag_text)
+        barrier = judge_barrier(tags, profile=self.profile)
+        if barrier is Barrier.UNKNOWN:
+            self.unknown[number] = tags["barrier"]
+        elif barrier is not Barrier.OPEN:
+            self.barriers[number] = barrier
+
+
+def _judge_ways(lines: list[str], judge: _Judge, points: _Points) -> None:
+    """Judge ways, a line of OPL each, and take the points of those for cars."""
+    heads, texts = array("q"), []
+    for line in lines:
+        number, tag_text, nodes = _fields(line)
+        rule = judge.rule(tag_text)
+        left_out = judge.rules[rule].left_out
+        if left_out:
+            judge.tally.add(left_out, f"way {number}")
+            continue
+        heads.extend((number, rule, judge.name(tag_text)))
+        texts.append(nodes[1:])
+    points.add(np.frombuffer(heads, np.int64).reshape(-1, 3), texts)
+
+
+def _judge_lines(
+    lines: Iterator[str], judge: _Judge, points: _Points, nodes: _Nodes
+) -> list[RawRestriction]:
+    """Read lines of OPL, ways a chunk at a time; return the restrictions."""
+    restrictions = []
     while chunk := list(islice(lines, LINES_AT_ONCE)):
-        heads, texts = array("q"), []
         for line in chunk:
-            head, _, nodes = line.rstrip("\n").rpartition(" N")
-            number, _, tag_text = head.partition(" T")
-            if "motor" not in tag_text and _ON_FOOT.search(tag_text):
-                counted("way_not_for_cars", f"way {number[1:]}")
-                continue
-            parts = tag_text.split(",")
-            rule = judge.rule(parts)
-            left_out = judge.rules[rule].left_out
-            if left_out:
-                if "highway=" in tag_text or left_out == "ferry_cars_unsaid":
-                    counted(left_out, f"way {number[1:]}")
-                continue
-            heads.extend((int(number[1:]), rule, judge.name(parts)))
-            texts.append(nodes)
-        points.add(np.frombuffer(heads, np.int64).reshape(-1, 3), texts)
-
-
-def _read_restrictions(path: Path) -> list[RawRestriction]:
-    wanted = osmium.filter.TagFilter(("type", "restriction"))
-    with osmium.io.Reader(str(path), osmium.osm.RELATION) as reader:
-        return [
-            RawRestriction(
-                relation.id,
-                {tag.k: tag.v for tag in relation.tags},
-                [(member.type, member.ref, member.role) for member in relation.members],
-            )
-            for relation in osmium.OsmFileIterator(reader, wanted)
-            if isinstance(relation, osmium.osm.Relation)
-        ]
+            if line[0] == "n":
+                nodes.take(line)
+            elif line[0] == "r":
+                restrictions.append(_restriction(line))
+        _judge_ways([line for line in chunk if line[0] == "w"], judge, points)
+    return restrictions
 
 
 def _explain(path: Path, error: Exception) -> RoadError:
@@ -266,29 +329,18 @@ def read_passes(
         what = "is a folder" if path.is_dir() else "does not exist"
         msg = f"{path}: {what}; give an extract named *.osm.pbf, *.osm or *.osm.bz2"
         raise RoadError(msg)
-    kind = "mem" if path.stat().st_size <= LOCATIONS_IN_MEMORY_UP_TO else "file"
-    judge, points = _Judge(profile, tally), _Points(within)
+    judge, points, nodes = _Judge(profile, tally), _Points(within), _Nodes(profile)
+    progress(STAGE, fraction=0.0)
     try:
         with tempfile.TemporaryDirectory(prefix="georoute-") as folder:
-            table = osmium.index.create_map(f"sparse_{kind}_array")
-            locations = osmium.NodeLocationsForWays(table)
-            locations.ignore_errors()
-            barriers, unknown = _read_nodes(path, locations, profile)
-            progress(STAGE, fraction=0.3)
-            text = Path(folder) / "ways.opl"
-            _write_ways(path, locations, text)
-            del locations, table
-            progress(STAGE, fraction=0.5)
-            with text.open(encoding="utf-8") as lines:
-                _judged_lines(lines, judge, points)
-        restrictions = _read_restrictions(path)
-    except (RuntimeError, OSError, ValueError, UnicodeDecodeError) as error:
+            restrictions = _judge_lines(_texts(path, Path(folder)), judge, points, nodes)
+    except (RuntimeError, OSError, ValueError) as error:
         raise _explain(path, error) from error
     progress(STAGE, fraction=0.7)
-    raw = _joined(judge, points, barriers, restrictions)
-    on_roads = np.unique(raw.ref[np.isin(raw.ref, np.array(list(unknown), np.int64))])
+    raw = _joined(judge, points, nodes.barriers, restrictions)
+    on_roads = np.unique(raw.ref[np.isin(raw.ref, np.array(list(nodes.unknown), np.int64))])
     for node in on_roads.tolist():
-        tally.add("barrier_unknown", f"node {node} barrier={unknown[node]}")
+        tally.add("barrier_unknown", f"node {node} barrier={nodes.unknown[node]}")
     return raw
 
 

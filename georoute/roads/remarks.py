@@ -13,7 +13,7 @@ if TYPE_CHECKING:
 __all__ = ["TEXTS", "Tally"]
 
 TEXTS: Mapping[str, str] = {
-    "way_not_for_cars": "ways that are not for cars were left out",
+    "way_not_for_cars": "pedestrian streets, building sites and the like were left out",
     "way_area": "ways that draw the outline of an area were left out",
     "way_reversible": "ways whose direction changes with the hour were left out",
     "way_shut": "ways are closed to cars in both directions and were left out",

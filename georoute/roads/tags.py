@@ -22,7 +22,10 @@ if TYPE_CHECKING:
 
 __all__ = [
     "ACCESS_KEYS",
+    "LOCAL_VALUES",
+    "OPEN_VALUES",
     "RELEVANT_KEYS",
+    "SHUT_VALUES",
     "Barrier",
     "Entry",
     "WayRule",
@@ -44,6 +47,9 @@ LOCAL_VALUES = frozenset(
     }
 )  # fmt: skip
 """``no`` and ``private`` count among them: a first or last leg may need them."""
+
+SHUT_VALUES = frozenset({"no", "private", "discouraged"})
+"""Values that open no way that is for people on foot."""
 
 _SHUT_WITHOUT_LEAVE = frozenset(
     {"pedestrian", "busway", "footway", "path", "bridleway", "cycleway"}
@@ -245,7 +251,7 @@ def _left_out(tags: Mapping[str, str], entry: Entry, key: str) -> str:
     if highway in _SHUT_WITHOUT_LEAVE:
         # "access=yes" on a footway speaks of people on foot; only tags for cars open it.
         value = tags.get(key, "")
-        opened = key in ACCESS_KEYS[:2] and value not in {"no", "private", "discouraged"}
+        opened = key in ACCESS_KEYS[:2] and value not in SHUT_VALUES
         return "" if opened and entry in {Entry.OPEN, Entry.LOCAL} else "way_not_for_cars"
     return "" if highway in _DRIVEN else "way_not_for_cars"
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from functools import cache
+from typing import Any
 
 import numpy as np
 import pytest
@@ -55,7 +56,7 @@ def test_matrix_and_paths_of_twenty_thousand_nodes_equal_those_of_scipy() -> Non
     sources, targets = (at_nodes(rng.integers(0, net.nodes, many)) for many in (40, 300))
     # No two arcs of the grid join the same nodes, and none takes no time; time and length in one
     # number would not fit a float, so time alone.
-    graph = csr_array((net.ms, (net.tail, net.head)), shape=(net.nodes, net.nodes))
+    graph: Any = csr_array((net.ms, (net.tail, net.head)), shape=(net.nodes, net.nodes))
     expected = np.asarray(dijkstra(graph, indices=sources.node))[:, targets.node]
     ms, mm = matrix(hierarchy, sources, targets)
     assert np.array_equal(np.where(ms == UNREACHABLE, np.inf, ms), expected)

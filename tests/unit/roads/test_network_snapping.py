@@ -9,6 +9,7 @@ import pytest
 
 from georoute.roads.model import Access
 from georoute.roads.network import RoadNetwork, Standing, build_network
+from georoute.roads.snap_report import snap_notes
 from georoute.roads.snapping import Snapped, plain_name, road_index, snap
 from tests.roads_helpers import GEOD, LAT0, LON0, RoadDraft, town
 
@@ -145,3 +146,34 @@ def test_ten_thousand_places_take_half_a_second() -> None:
         best = min(best, time.process_time() - begin)
     assert not snapped.is_far.any()
     assert best <= 0.5
+
+
+def test_what_is_worth_telling_is_told() -> None:
+    draft = block()
+    draft.road(4, 5, name="Pasaje Solo")
+    network = build_network(draft.table())
+    near_island, far = (LAT0 + 25 * M, LON0 + 0.0005), (LAT0 - 0.1, LON0)
+    long, good = (LAT0 - 150 * M, LON0 + 0.0005), (LAT0 - 5 * M, LON0 + 0.0005)
+    other = (LAT0 + 0.001 - 30 * M, LON0 - 6 * M)
+    streets = [None, None, None, None, "Calle Norte"]
+    snapped = put(network, near_island, far, long, good, other, street=streets)
+    assert [(note.place, note.is_far, note.text) for note in snap_notes(network, snapped)] == [
+        (
+            0,
+            False,
+            (
+                "put on Calle Sur, 25 m away; Pasaje Solo is nearer (5 m), but no way leads from "
+                "it to the main roads or back; 2 junctions hang together there"
+            ),
+        ),
+        (1, True, "no road that trips can use within 500 m"),
+        (2, False, "put on Calle Sur, 150 m away"),
+        (
+            4,
+            False,
+            (
+                "put on Calle Norte, 30 m away; Calle Sur is nearer (5 m), but the address is on "
+                "another street"
+            ),
+        ),
+    ]

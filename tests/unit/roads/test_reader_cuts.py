@@ -164,6 +164,7 @@ def test_node_locations_of_large_files_go_to_the_disk(
 
 def test_ways_are_read_in_chunks(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     ways: list[Way] = [(n, (10 * n + 1, 10 * n + 2), ROAD) for n in range(1, 6)]
+    ways.insert(2, (9, (91, 92), {"highway": "pedestrian"}))
     expected = open_arcs(read_map(tmp_path, ways))
     monkeypatch.setattr(osm_passes, "LINES_AT_ONCE", 2)
     assert open_arcs(read_map(tmp_path, ways)) == expected
@@ -208,8 +209,10 @@ def test_a_folder_is_no_extract(tmp_path: Path) -> None:
 
 
 def test_a_file_without_roads_tells_what_it_holds(tmp_path: Path) -> None:
-    with pytest.raises(RoadError, match=r"1 ways that are not for cars"):
+    with pytest.raises(RoadError, match=r"no way that its tags make a road for cars"):
         read_map(tmp_path, [(1, (11, 12), {"highway": "steps"})])
+    with pytest.raises(RoadError, match=r"found: 1 pedestrian streets"):
+        read_map(tmp_path, [(1, (11, 12), {"highway": "pedestrian"})])
     with pytest.raises(RoadError, match=r"no two neighbouring nodes"):
         read_map(tmp_path, [(1, (11, 12, 13), ROAD)], missing=(12,))
 

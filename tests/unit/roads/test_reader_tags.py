@@ -281,7 +281,7 @@ def test_a_ferry_without_a_usable_duration(
     [
         ({}, {"ferry_cars_unsaid": 1}),
         ({"access": "yes"}, {"ferry_cars_unsaid": 1}),
-        ({"motor_vehicle": "no"}, {}),
+        ({"motor_vehicle": "no"}, {"way_not_for_cars": 1}),
     ],
 )
 def test_a_ferry_that_does_not_say_it_carries_cars_is_left_out(

@@ -96,7 +96,7 @@ def test_without_the_kept_network_the_audit_says_what_it_could_not_do(planned: P
 
 
 def test_a_site_far_from_every_road_is_told_and_left_out() -> None:
-    roads = RoadSettings(path=str(EXTRACT), country="CL", snap_limit_m=100.0)
+    roads = RoadSettings(path=str(EXTRACT), country="CL")
     travel = replace(small_programme().travel, method=TravelMethod.ROADS, roads=roads)
     programme = small_programme(bases=(BASE,), travel=travel)
     register = small_register([*SPOTS, (-29.9, -71.5)])  # at sea

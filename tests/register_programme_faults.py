@@ -148,8 +148,8 @@ FAULTS: list[tuple[str, str, str, str]] = [
         (
             "unknown_road_class",
             f"travel.roads.{table}.{name}",
-            "speed_kmh = 40",
-            f"speed_kmh = 40\n[travel.roads.{table}]\n{name} = 0.5",
+            'method = "detour"',
+            f'method = "detour"\n[travel.roads.{table}]\n{name} = 0.5',
         )
         for table, name in (("speeds", "highway"), ("real_factors", "residental"), ("speeds", "x"))
     ),

@@ -10,16 +10,15 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from georoute.domain.costs import CostMatrix
-from georoute.domain.findings import Finding, Severity
 from georoute.domain.roads import LegShape, RoadPoint
 from georoute.domain.run import no_progress
 from georoute.errors import RoadError
 from georoute.kernels.arrays import UNREACHABLE
-from georoute.measure.straight import geodesic_m
+from georoute.measure.road_findings import road_findings
 from georoute.roads.backdrop import road_backdrop
 from georoute.roads.box import Box
 from georoute.roads.cache import BuiltRoads, cached_roads, settings_key
-from georoute.roads.network import Standing
+from georoute.roads.snap_report import snap_notes
 from georoute.roads.snapping import snap
 from georoute.roads.sources import read_road_source
 from georoute.roads.speeds import SpeedProfile, default_profile
@@ -32,6 +31,7 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from georoute.domain.costs import Places
+    from georoute.domain.findings import Finding
     from georoute.domain.programme import RoadSettings
     from georoute.domain.roads import BackdropLine, Way
     from georoute.domain.run import Progress
@@ -48,14 +48,13 @@ LARGE_SHARE = 0.5
 BYTES_A_PAIR = 64
 """Times and lengths as measured, as written, and as packed for the search."""
 MS_PER_S, MM_PER_M = 1_000.0, 1_000.0
-NO_NAME = "a road without a name"
 
 
 class _WaysOnRoads:
     """How the legs between places on roads are driven."""
 
-    def __init__(self, travel: RoadTravel, told: _Told, network: str) -> None:
-        self._travel, self._told = travel, told
+    def __init__(self, travel: RoadTravel, places: Places, network: str) -> None:
+        self._travel, self._places = travel, places
         self.network = network
         self.credit = travel.network.table.credit
 
@@ -74,7 +73,21 @@ class _WaysOnRoads:
 
     def points(self) -> tuple[RoadPoint, ...]:
         """Return where the places meet the road."""
-        return self._told.points()
+        snapped, table = self._travel.snapped, self._travel.network.table
+        passed = {note.place: note.why for note in snap_notes(self._travel.network, snapped)}
+        return tuple(
+            RoadPoint(
+                place_id=self._places.ids[p],
+                lat_deg=float(snapped.road_lat_deg[p]),
+                lon_deg=float(snapped.road_lon_deg[p]),
+                distance_m=float(snapped.distance_m[p]),
+                road=table.names[table.name[snapped.stretch[p]]],
+                stretch=int(snapped.stretch[p]),
+                offset_m=int(snapped.offset_mm[p]) / MM_PER_M,
+                skipped=passed.get(p, ""),
+            )
+            for p in np.flatnonzero(~snapped.is_far).tolist()
+        )
 
     def backdrop(self, ways: Sequence[Way]) -> tuple[BackdropLine, ...]:
         """Return what to draw under tours that take these ways."""
@@ -158,122 +171,6 @@ def _refuse_too_many(places: int) -> None:
         raise RoadError(msg)
 
 
-class _Told:
-    """Findings about places on roads."""
-
-    def __init__(self, travel: RoadTravel, places: Places, settings: RoadSettings) -> None:
-        self._travel, self._places, self._settings = travel, places, settings
-        self._table = travel.network.table
-
-    def road(self, stretch: int) -> str:
-        return self._table.names[self._table.name[stretch]] or NO_NAME
-
-    def skipped(self, p: int) -> str:
-        snapped, network = self._travel.snapped, self._travel.network
-        stretch = int(snapped.skipped[p])
-        if stretch < 0:
-            return ""
-        standing = Standing(int(network.standing[stretch])).name.lower().replace("_", " ")
-        return (
-            f"nearer by {snapped.distance_m[p] - snapped.skipped_m[p]:.0f} m: "
-            f"{self.road(stretch)} ({standing}, "
-            f"{network.nodes_around(stretch)} junctions hang together there)"
-        )
-
-    def points(self) -> tuple[RoadPoint, ...]:
-        snapped = self._travel.snapped
-        return tuple(
-            RoadPoint(
-                place_id=self._places.ids[p],
-                lat_deg=float(snapped.road_lat_deg[p]),
-                lon_deg=float(snapped.road_lon_deg[p]),
-                distance_m=float(snapped.distance_m[p]),
-                road=self.road(int(snapped.stretch[p])),
-                stretch=int(snapped.stretch[p]),
-                offset_m=int(snapped.offset_mm[p]) / MM_PER_M,
-                skipped=self.skipped(p),
-            )
-            for p in np.flatnonzero(~snapped.is_far).tolist()
-        )
-
-    def far(self) -> list[Finding]:
-        """Tell of places without a road within reach."""
-        return [
-            self._warning(
-                "far_from_roads",
-                f"no road that leads to the rest of the network lies within "
-                f"{self._settings.snap_limit_m:g} m" + self._nearest(p),
-                "check the coordinates; raise snap_limit_m under [travel.roads] if it is right",
-                p,
-            )
-            for p in np.flatnonzero(self._travel.snapped.is_far).tolist()
-        ]
-
-    def _nearest(self, p: int) -> str:
-        told = self.skipped(p)
-        return f"; {told}" if told else ""
-
-    def cut_off(self, ms: NDArray[np.int64]) -> list[Finding]:
-        """Tell of places on the network that some other place cannot reach, or that cannot."""
-        on = np.flatnonzero(~self._travel.snapped.is_far)
-        lost = (ms[np.ix_(on, on)] >= UNREACHABLE).sum(axis=1)
-        return [
-            self._warning(
-                "cut_off",
-                f"no way leads from here to {count} of {on.shape[0] - 1} other places",
-                "look at the one-way streets and closures around it",
-                int(on[k]),
-            )
-            for k, count in enumerate(lost.tolist())
-            if count > 0
-        ]
-
-    def _warning(self, code: str, message: str, remedy: str, p: int) -> Finding:
-        place_id = self._places.ids[p]
-        return Finding(
-            severity=Severity.WARNING,
-            code=code,
-            message=f"{place_id}: {message}",
-            remedy=remedy,
-            file=self._settings.path,
-            subject=place_id,
-        )
-
-    def remarks(self) -> list[Finding]:
-        return [
-            Finding(
-                severity=Severity.NOTE,
-                code=remark.code,
-                message=f"{remark.count} {remark.text}"
-                + (f", for instance {remark.example}" if remark.example else ""),
-                file=self._settings.path,
-            )
-            for remark in self._travel.network.remarks
-        ]
-
-
-def _circuity(places: Places, mm: NDArray[np.int64], settings: RoadSettings) -> list[Finding]:
-    """Tell how much longer roads are than straight lines, over all pairs of places."""
-    n = mm.shape[0]
-    rows = np.arange(0, n, max(1, n // 200))
-    lat, lon = places.lat_deg, places.lon_deg
-    straight = geodesic_m(lat[rows, None], lon[rows, None], lat[None, :], lon[None, :])
-    roads = mm[rows]
-    good = (straight > 1.0) & (roads < UNREACHABLE)
-    if not good.any():
-        return []
-    low, middle, high = np.percentile(roads[good] / MM_PER_M / straight[good], (5, 50, 95))
-    return [
-        Finding(
-            severity=Severity.NOTE,
-            code="circuity",
-            message=f"roads are {middle:.2f} times as long as the straight line (median of "
-            f"{int(good.sum())} pairs; 90 % of them {low:.2f} to {high:.2f})",
-            file=settings.path,
-        )
-    ]
-
-
 def _in_units(ticks: NDArray[np.int64], a_unit: float) -> NDArray[np.float64]:
     return np.where(ticks >= UNREACHABLE, np.inf, ticks / a_unit)
 
@@ -315,17 +212,16 @@ def measure_on_roads(
         raise RoadError(msg)
     travel = RoadTravel(built.network, snapped, HierarchySearch(built.hierarchy))
     ms, mm = travel.matrix(progress=progress)
-    told = _Told(travel, places, settings)
     costs = CostMatrix(
         place_ids=places.ids,
         travel_s=_in_units(ms, MS_PER_S),
         length_m=_in_units(mm, MM_PER_M),
         source=_source(built.network.table, settings),
         estimated=False,
-        ways=_WaysOnRoads(travel, told, built.file_name),
+        ways=_WaysOnRoads(travel, places, built.file_name),
     )
-    circuity = _circuity(places, mm, settings)
-    return costs, (*told.far(), *told.cut_off(ms), *circuity, *told.remarks())
+    told = road_findings(built.network, snapped, places, ms, mm)
+    return costs, tuple(replace(finding, file=settings.path) for finding in told)
 
 
 def _source(table: RoadTable, settings: RoadSettings) -> str:

@@ -14,6 +14,7 @@ from georoute.cli.exit_codes import ExitCode
 from georoute.cli.plan import plan
 from georoute.cli.publish import publish
 from georoute.cli.render import print_error, print_findings
+from georoute.cli.roads import roads
 from georoute.cli.show import show
 from georoute.errors import GeorouteError, InputError, OutputError, PlanError
 
@@ -31,7 +32,7 @@ app = typer.Typer(
     rich_markup_mode=None,
     context_settings={"help_option_names": ["-h", "--help"]},
 )
-for command in (check, plan, show, publish, demo):
+for command in (check, roads, plan, show, publish, demo):
     app.command()(command)
 
 

@@ -23,7 +23,7 @@ if TYPE_CHECKING:
 
     from georoute.domain.plan import BackdropLine, Plan
 
-__all__ = ["Detail", "Ground", "box_around", "fitting"]
+__all__ = ["DETAILS", "MAIN_ONLY", "Detail", "Ground", "box_around", "fitting"]
 
 _FINEST_M = 6.0
 _SHORTEST_M = 12.0
@@ -48,7 +48,7 @@ class Detail:
     tolerance_m: float = _FINEST_M
 
 
-_DETAILS = (
+DETAILS = (
     Detail(local_m=800, minor_m=800),
     Detail(local_m=400, minor_m=800),
     Detail(local_m=150, minor_m=800),
@@ -59,6 +59,8 @@ _DETAILS = (
     Detail(local_m=0, minor_m=0, tolerance_m=60),
 )
 """The local roads go first, then the minor ones, then the main ones are told more shortly."""
+MAIN_ONLY = tuple(Detail(local_m=0, minor_m=0, tolerance_m=fine) for fine in (10.0, 25.0, 80.0))
+"""What an overview shows."""
 
 
 def box_around(points_m: NDArray[np.float64]) -> NDArray[np.float64]:
@@ -207,7 +209,7 @@ def fitting(
     box: NDArray[np.float64],
     tours: Sequence[NDArray[np.float64]],
     budget: int,
-    details: Sequence[Detail] = _DETAILS,
+    details: Sequence[Detail] = DETAILS,
 ) -> dict[str, object]:
     """Return the most of the ground that takes no more than ``budget`` bytes of a page.
 

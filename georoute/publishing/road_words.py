@@ -1,0 +1,81 @@
+"""What run lists and run sheets say of the roads of a leg."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from georoute.domain.plan import Leg, RoadPoint
+    from georoute.publishing.figures import Figures
+
+__all__ = ["NO_WAY", "WayWords", "last_metres", "way_words"]
+
+_MOST_NAMES = 4
+_SHORT_M = 60.0
+"""A road driven for less is a crossing or a slip road; it is counted, not named."""
+_TOLD_APART_M = 30.0
+_ROUND_M = 10.0
+
+
+@dataclass(frozen=True, slots=True)
+class WayWords:
+    """The roads of a leg and what to mind on it; empty for a straight leg of a straight plan."""
+
+    roads: str = ""
+    ferry: str = ""
+
+
+NO_WAY = WayWords()
+
+
+def _merged(roads: tuple[tuple[str, float], ...]) -> list[tuple[str, float]]:
+    """Return named roads in the order driven; crossings between two parts of one do not part it."""
+    merged: list[tuple[str, float]] = []
+    for name, metres in roads:
+        if merged and (merged[-1][0] == name or (not name and metres < _SHORT_M)):
+            merged[-1] = (merged[-1][0], merged[-1][1] + metres)
+        else:
+            merged.append((name, metres))
+    return merged
+
+
+def _length(metres: float, figures: Figures) -> str:
+    rounded = max(_ROUND_M, round(metres / _ROUND_M) * _ROUND_M)
+    if rounded < 1000:
+        return figures.words("scale_metres", metres=f"{rounded:.0f}")
+    return figures.words("kilometres", km=figures.number(metres / 1000, 1))
+
+
+def _roads_text(leg: Leg, figures: Figures) -> str:
+    words, merged = figures.words, _merged(leg.roads)
+    named = [k for k, (name, metres) in enumerate(merged) if name and metres >= _SHORT_M]
+    if not named:
+        return words("way_unnamed")
+    longest = sorted(sorted(named, key=lambda k: -merged[k][1])[:_MOST_NAMES])
+    parts = [f"{merged[k][0]} {_length(merged[k][1], figures)}" for k in longest]
+    text = words("way_then").join(parts)
+    # only named roads are counted: data parts an unnamed one at will
+    others = len({merged[k][0] for k in named} - {merged[k][0] for k in longest})
+    if not others:
+        return words("way_by", roads=text)
+    key = "way_by_more_one" if others == 1 else "way_by_more"
+    return words(key, roads=text, count=others)
+
+
+def way_words(leg: Leg, figures: Figures) -> WayWords:
+    """Return what is said of the roads of a leg."""
+    if not leg.path:
+        return NO_WAY
+    ferry = figures.words("way_ferry") if leg.ferry else ""
+    return WayWords(roads=_roads_text(leg, figures), ferry=ferry)
+
+
+def last_metres(point: RoadPoint | None, figures: Figures) -> str:
+    """Return how far a site lies from where driving ends, where that is worth a word."""
+    if point is None or point.distance_m <= _TOLD_APART_M:
+        return ""
+    words, length = figures.words, _length(point.distance_m, figures)
+    if point.road:
+        return words("off_road_named", length=length, road=point.road)
+    return words("off_road", length=length)

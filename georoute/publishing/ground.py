@@ -29,6 +29,10 @@ _FINEST_M = 6.0
 _SHORTEST_M = 12.0
 """A piece of road shorter than this is not drawn."""
 _ROUND = 2
+_WIDEST = 1.9
+"""A map may be this many times as wide as high, or as high as wide."""
+_WATER_BEYOND = 2.0
+"""Water is cut this many times farther out than roads: it takes few bytes, and its cut shows."""
 _KEYS = {
     BackdropKind.MAIN: "main",
     BackdropKind.MINOR: "minor",
@@ -67,8 +71,13 @@ def box_around(points_m: NDArray[np.float64]) -> NDArray[np.float64]:
     """Return the view around points, as west, south, east, north: room for any shape of screen."""
     low, high = points_m.min(axis=0), points_m.max(axis=0)
     middle, half = (low + high) / 2, np.maximum((high - low) / 2, 400.0)
-    half = np.maximum(half, half[::-1] * 0.75) * 1.4
+    half = np.maximum(half, half[::-1] * _WIDEST) * 1.3
     return np.concatenate([middle - half, middle + half])
+
+
+def _grown(box: NDArray[np.float64], times: float) -> NDArray[np.float64]:
+    middle, half = (box[:2] + box[2:]) / 2, (box[2:] - box[:2]) / 2
+    return np.concatenate([middle - half * times, middle + half * times])
 
 
 def _lines(shape: BaseGeometry) -> Iterator[BaseGeometry]:
@@ -161,7 +170,7 @@ class Ground:
         ):
             area = _around(tours, reach) if reach else None
             named[kind] = self.near(kind, area, fine) if area is not None else []
-        return self._told(named, self.water(box).simplify(fine))
+        return self._told(named, self.water(_grown(box, _WATER_BEYOND)).simplify(fine))
 
     def _told(
         self, named: dict[BackdropKind, list[Named]], water: BaseGeometry
@@ -219,11 +228,8 @@ def fitting(
         told = ground.view(box, tours, detail)
         if _bytes(told) <= budget:
             return told
-    middle = (box[:2] + box[2:]) / 2
-    half = (box[2:] - box[:2]) / 2
     for share in (0.7, 0.5, 0.35):
-        smaller = np.concatenate([middle - half * share, middle + half * share])
-        told = ground.view(smaller, tours, details[-1])
+        told = ground.view(_grown(box, share), tours, details[-1])
         if _bytes(told) <= budget:
             return told
     return {"streets": []}

@@ -131,6 +131,13 @@ onRoads.readLegs = (legs) => {
   });
 };
 
+// Along roads the edge is a full line; the dash of the weekday lies on the bare cord.
+function ropeOf(points, home, dash) {
+  if (home) return [polyline(points, "cord-edge home"), polyline(points, "cord home")];
+  return [polyline(points, "cord-edge way"), polyline(points, "cord-bare"),
+    polyline(points, "cord way", dash)];
+}
+
 function barbsAlong(points, barbs) {
   const long = lengthOf(points);
   if (long < 34) return;
@@ -157,11 +164,10 @@ onRoads.drawLeg = (map, leg, { cords, barbs, dash }) => {
       mark.append(svg("path", { d: FERRY, class: "ferry-mark" }));
       mark.append(svg("text", { x: 11, y: 4, class: "street" }, data.roads.ferry_sign));
       barbs.append(mark);
+      onRoads.signs.push({ x: x - 10, y: y - 8, w: 24 + 7 * data.roads.ferry_sign.length, h: 18 });
       continue;
     }
-    const kind = leg.home ? "home" : "way";
-    cords.append(polyline(moved, `cord-edge ${kind}`));
-    cords.append(polyline(moved, `cord ${kind}`, leg.home ? "" : dash));
+    cords.append(...ropeOf(moved, leg.home, dash));
     barbsAlong(moved, barbs);
   }
   return segments;
@@ -183,10 +189,8 @@ onRoads.hasRuns = (tour, leg) => data.roads.runs[tour][leg].length > 0;
 onRoads.drawRuns = (map, tour, leg, { group, dash, home }) => {
   const moved = data.roads.runs[tour][leg].flatMap(([slot, ...flat]) => {
     const points = thinLine(onSheet(map, degreesOf(flat)), 0.7);
-    return offsetLine(points, (1.5 + slot * 3.5) * data.side);
+    return offsetLine(points, (1.8 + slot * 3.6) * data.side);
   });
-  const kind = home ? "home" : "way";
-  group.append(polyline(moved, `cord-edge ${kind}`));
-  group.append(polyline(moved, `cord ${kind}`, home ? "" : dash));
+  group.append(...ropeOf(moved, home, dash));
   return segmentsOf(thinLine(moved, 3));
 };

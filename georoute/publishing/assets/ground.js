@@ -57,6 +57,7 @@ function traced(map, lines, corner, closed) {
 
 onRoads.drawGround = (map, sheet) => {
   const canvas = canvasUnder(sheet);
+  onRoads.signs = []; // boxes of signs on cords, which street names keep clear of
   const size = map.getSize();
   const corner = map.containerPointToLayerPoint(size.multiplyBy(-GROUND_PAD)).round();
   const wide = Math.round(size.x * (1 + 2 * GROUND_PAD));

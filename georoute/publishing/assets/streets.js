@@ -154,7 +154,8 @@ onRoads.drawStreets = (sheet, map, items, given, leaders) => {
   const scene = {
     view: seen.view,
     dots: given.dots,
-    boxes: [...labels.map((item) => upright(item.spot)), ...seen.blocked.map(upright)],
+    boxes: [...labels.map((item) => upright(item.spot)), ...seen.blocked.map(upright),
+      ...onRoads.signs.map(upright)],
     leaders: labels.map((item) => item.spot.leader),
     segments: given.segments,
   };

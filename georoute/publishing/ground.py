@@ -194,7 +194,11 @@ class Ground:
 
     def _flat_lines(self, lines: list[tuple[int, NDArray[np.float64]]]) -> dict[str, list[int]]:
         """Return lines as one list of differences, with their sizes and the names of each."""
-        steps = [(name, self.flat.steps(points)) for name, points in lines]
+        all_steps = self.flat.steps(np.vstack([points for _, points in lines]))
+        ends = np.cumsum([0, *(len(points) for _, points in lines)]).tolist()
+        steps = [
+            (name, all_steps[ends[k] : ends[k + 1]]) for k, (name, _) in enumerate(lines)
+        ]
         # neighbours one after the other: the way from the end of one to the next is short
         steps.sort(key=lambda line: (line[1][0][0] // 400, line[1][0][1], line[1]))
         return {

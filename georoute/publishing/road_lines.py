@@ -47,12 +47,17 @@ class Flat:
         x = (lon - self.lon0_deg) * self._east_m
         return np.column_stack([x, (lat - self.lat0_deg) * _M_PER_DEG])
 
+    def back(
+        self, points_m: NDArray[np.float64]
+    ) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+        """Return metres, shape (n, 2), as latitudes and longitudes."""
+        lat = self.lat0_deg + points_m[:, 1] / _M_PER_DEG
+        return lat, self.lon0_deg + points_m[:, 0] / self._east_m
+
     def steps(self, points_m: NDArray[np.float64]) -> list[tuple[int, int]]:
         """Return metres, shape (n, 2), as latitude and longitude in whole steps."""
-        lat = self.lat0_deg + points_m[:, 1] / _M_PER_DEG
-        lon = self.lon0_deg + points_m[:, 0] / self._east_m
-        rows = np.rint(np.column_stack([lat, lon]) / STEP_DEG).astype(np.int64)
-        return [(int(a), int(b)) for a, b in rows]
+        rows = np.rint(np.column_stack(self.back(points_m)) / STEP_DEG).astype(np.int64)
+        return [(a, b) for a, b in rows.tolist()]
 
 
 def thinned(points: NDArray[np.float64], tolerance: float) -> NDArray[np.float64]:

@@ -28,10 +28,11 @@ def run_sheet(edition: Edition, tour: DayTour) -> str:
         environment()
         .get_template("sheet.html")
         .render(
-            **edition.common(),
+            **edition.common() | {"map_note": edition.map_note([tour])},
             title=words("day_title", date=view.date_long, inspector=view.inspector),
             day=view,
-            sketch=sketch_of(view, words, side=edition.side()),
+            sketch=sketch_of(view, words, side=edition.side(), ground=edition.ground),
+            ferry_sign=words("ferry_sign"),
             hue=HUES[view.look.hue],
             width=WIDTH,
             height=HEIGHT,

@@ -29,7 +29,7 @@ from georoute.domain.plan import (
     TravelNote,
 )
 from georoute.domain.sites import Base, Site
-from tests.publish_helpers import sample_plan
+from tests.publish_helpers import HOSTILE, sample_plan
 
 ROOT = Path(__file__).resolve().parents[1]
 EXTRACT = ROOT / "data" / "la_serena_coquimbo.osm.pbf"
@@ -192,6 +192,7 @@ def on_streets(plan: Plan) -> Plan:
     )
 
 
+@functools.cache
 def roads_plan(*, days: int = 1, people: int = 1, stops: int = 15) -> Plan:
     """Return a plan of ``days`` x ``people`` tours on real streets."""
     return on_streets(_moved_sites(sample_plan(days=days, people=people, stops=stops)))
@@ -222,3 +223,58 @@ def with_bay(plan: Plan) -> Plan:
         ),
     )
     return replace(plan, tours=(tour, *plan.tours[1:]), backdrop=(*plan.backdrop, *more))
+
+
+def dense_town(plan: Plan, *, spacing_m: float = 45.0, half_m: float = 4500.0) -> Plan:
+    """Return the plan over an invented town of crooked streets, far denser than the extract."""
+    rng = np.random.default_rng(5)
+    lat0, lon0 = plan.road_points[0].lat_deg, plan.road_points[0].lon_deg
+    across = np.arange(-half_m, half_m, spacing_m)
+    lines = []
+    for number, offset in enumerate(across):
+        kind = BackdropKind.LOCAL
+        if number % 3 == 0:
+            kind = BackdropKind.MAIN if number % 9 == 0 else BackdropKind.MINOR
+        for turned in (False, True):
+            wobble = offset + rng.normal(0, 9, len(across))
+            north, east = (across, wobble) if turned else (wobble, across)
+            path = zip(
+                lat0 + north / _M_PER_DEG, lon0 + east / _M_PER_DEG / math.cos(math.radians(lat0)),
+                strict=True,
+            )
+            name = f"Pasaje {'Norte' if turned else 'Oriente'} {number} & <b>"
+            lines.append(
+                BackdropLine(kind=kind, name=name, path=tuple((float(a), float(b)) for a, b in path))
+            )
+    return replace(plan, backdrop=tuple(lines))
+
+
+def with_hostile_streets(plan: Plan) -> Plan:
+    """Return the plan with hostile names on every road, in legs, backdrop and road points."""
+    evil = dict(enumerate(HOSTILE))
+
+    def name_of(number: int) -> str:
+        return evil[number % len(evil)]
+
+    tours = tuple(
+        replace(
+            tour,
+            legs=tuple(
+                replace(
+                    leg,
+                    roads=tuple((name_of(k), 400.0 + metres) for k, (_, metres) in enumerate(leg.roads)),
+                )
+                for leg in tour.legs
+            ),
+        )
+        for tour in plan.tours
+    )
+    return replace(
+        plan,
+        tours=tours,
+        backdrop=tuple(replace(line, name=name_of(k)) for k, line in enumerate(plan.backdrop)),
+        road_points=tuple(
+            replace(point, road=name_of(k), distance_m=45.0)
+            for k, point in enumerate(plan.road_points)
+        ),
+    )

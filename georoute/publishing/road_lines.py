@@ -21,8 +21,8 @@ __all__ = ["STEP_DEG", "Flat", "moved_aside", "steps_of", "thinned"]
 STEP_DEG = 1e-5
 """Lines are told in whole steps of this, about a metre."""
 _M_PER_DEG = 111_195.0
-_GENTLE = 0.5
-"""1 + the cosine of a turn above which both sides of a corner are mitred (turns up to 120°)."""
+_GENTLE = 1.0
+"""1 + the cosine of a turn from which corners are mitred: turns up to 90 degrees."""
 _ARC_STEP = math.pi / 6
 
 
@@ -113,12 +113,9 @@ def moved_aside(points: NDArray[np.float64], by: float) -> NDArray[np.float64]:
         inner = turn * by > 0
         room = min(length[k - 1], length[k])
         reach = abs(by * turn) / max(open_, 1e-9)
-        if open_ >= 1.0 or (open_ > _GENTLE and not inner):
-            fits = not inner or reach <= room
-            if fits:
-                moved.append(corner + (before + after) / open_ * by)
-                continue
-        if inner:
+        if open_ >= _GENTLE and (not inner or reach <= room):
+            moved.append(corner + (before + after) / open_ * by)
+        elif inner:
             moved += [corner + before * by, corner, corner + after * by]
         else:
             moved += _arc(corner, before, after, by)

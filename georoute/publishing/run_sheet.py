@@ -23,7 +23,7 @@ def run_sheet(edition: Edition, tour: DayTour) -> str:
     """Return the run sheet of a tour as HTML."""
     words = edition.figures.words
     view = view_of(edition, tour)
-    style = own("sheet.css")
+    style = own("sheet.css") + (own("sheet_roads.css") if edition.ground else "")
     return (
         environment()
         .get_template("sheet.html")

@@ -1,5 +1,5 @@
 // Cords along roads: a line of points moved aside as one, with joins that never spike.
-const GENTLE = 0.5; // 1 + the cosine of a turn of 120 degrees
+const GENTLE = 1; // 1 + the cosine of a turn of 90 degrees
 
 // Points [x, y] without those that lie within a distance of what is left (Douglas and Peucker).
 function thinLine(points, by) {
@@ -67,7 +67,7 @@ function offsetLine(given, shift) {
     const inner = turn * shift > 0;
     const fits = !inner || Math.abs(shift * turn) / Math.max(open, 1e-9)
       <= Math.min(lengths[k - 1], lengths[k]);
-    if ((open >= 1 || (open > GENTLE && !inner)) && fits) {
+    if (open >= GENTLE && fits) {
       moved.push(at(points[k], [ax + bx, ay + by], shift / open));
     } else if (inner) {
       moved.push(at(points[k], [ax, ay], shift), points[k], at(points[k], [bx, by], shift));

@@ -72,7 +72,9 @@ class Streets:
     def __init__(self) -> None:
         self.graph = nx.DiGraph()
         self.lines: list[BackdropLine] = []
-        for way in osmium.FileProcessor(str(EXTRACT), osmium.osm.NODE | osmium.osm.WAY).with_locations():
+        for way in osmium.FileProcessor(
+            str(EXTRACT), osmium.osm.NODE | osmium.osm.WAY
+        ).with_locations():
             if isinstance(way, osmium.osm.Way) and "highway" in way.tags:
                 self._add(way)
         main = max(nx.strongly_connected_components(self.graph), key=len)
@@ -101,7 +103,9 @@ class Streets:
         distance, number = self.tree.query(self._plane([place]))
         return self.nodes[int(number[0])], float(distance[0])
 
-    def way(self, start: Place, end: Place) -> tuple[tuple[Place, ...], tuple[tuple[str, float], ...]]:
+    def way(
+        self, start: Place, end: Place
+    ) -> tuple[tuple[Place, ...], tuple[tuple[str, float], ...]]:
         """Return the cheapest path between two nodes, and its roads in the order driven."""
         path = nx.shortest_path(self.graph, start, end, weight="cost")
         roads: list[tuple[str, float]] = []
@@ -239,12 +243,15 @@ def dense_town(plan: Plan, *, spacing_m: float = 45.0, half_m: float = 4500.0) -
             wobble = offset + rng.normal(0, 9, len(across))
             north, east = (across, wobble) if turned else (wobble, across)
             path = zip(
-                lat0 + north / _M_PER_DEG, lon0 + east / _M_PER_DEG / math.cos(math.radians(lat0)),
+                lat0 + north / _M_PER_DEG,
+                lon0 + east / _M_PER_DEG / math.cos(math.radians(lat0)),
                 strict=True,
             )
             name = f"Pasaje {'Norte' if turned else 'Oriente'} {number} & <b>"
             lines.append(
-                BackdropLine(kind=kind, name=name, path=tuple((float(a), float(b)) for a, b in path))
+                BackdropLine(
+                    kind=kind, name=name, path=tuple((float(a), float(b)) for a, b in path)
+                )
             )
     return replace(plan, backdrop=tuple(lines))
 
@@ -262,7 +269,9 @@ def with_hostile_streets(plan: Plan) -> Plan:
             legs=tuple(
                 replace(
                     leg,
-                    roads=tuple((name_of(k), 400.0 + metres) for k, (_, metres) in enumerate(leg.roads)),
+                    roads=tuple(
+                        (name_of(k), 400.0 + metres) for k, (_, metres) in enumerate(leg.roads)
+                    ),
                 )
                 for leg in tour.legs
             ),

@@ -196,9 +196,7 @@ class Ground:
         """Return lines as one list of differences, with their sizes and the names of each."""
         all_steps = self.flat.steps(np.vstack([points for _, points in lines]))
         ends = np.cumsum([0, *(len(points) for _, points in lines)]).tolist()
-        steps = [
-            (name, all_steps[ends[k] : ends[k + 1]]) for k, (name, _) in enumerate(lines)
-        ]
+        steps = [(name, all_steps[ends[k] : ends[k + 1]]) for k, (name, _) in enumerate(lines)]
         # neighbours one after the other: the way from the end of one to the next is short
         steps.sort(key=lambda line: (line[1][0][0] // 400, line[1][0][1], line[1]))
         return {

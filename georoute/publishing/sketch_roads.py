@@ -96,8 +96,7 @@ def _barbs(line: NDArray[np.float64]) -> tuple[NDArray[np.float64], ...]:
     half = 4.0 / shape.length
     shares = [(k + 0.5) / count for k in range(count)]
     return tuple(
-        np.concatenate([_along(line, share - half), _along(line, share + half)])
-        for share in shares
+        np.concatenate([_along(line, share - half), _along(line, share + half)]) for share in shares
     )
 
 
@@ -137,9 +136,7 @@ def cord_segments(legs: list[list[Cord]]) -> NDArray[np.float64]:
 
 def _path(lines: Iterable[NDArray[np.float64]], *, closed: bool = False) -> str:
     end = "Z" if closed else ""
-    return "".join(
-        "M" + "L".join(f"{x:g} {y:g}" for x, y in line.round(1)) + end for line in lines
-    )
+    return "".join("M" + "L".join(f"{x:g} {y:g}" for x, y in line.round(1)) + end for line in lines)
 
 
 def _inside(shape: BaseGeometry, frame: tuple[float, float]) -> list[NDArray[np.float64]]:

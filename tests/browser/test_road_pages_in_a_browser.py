@@ -92,10 +92,12 @@ def test_street_names_are_clear_uncut_and_readable(
         labels = measure_labels(page)
         assert {name: labels[name] for name in FAULTS if labels[name]} == {}
         counts.append(len(shown["names"]))
-        for _ in range(2):
+        if len(counts) == 1:
+            page.locator("#stop-9 .row-open").click()
+        for _ in range(1 if size == PHONE else 2):
             page.locator("[data-map=in]").click()
-    assert counts[0] >= 1
-    assert max(counts) >= (8 if size == PHONE else 20)
+    assert size == PHONE or counts[0] >= 1
+    assert max(counts) >= (5 if size == PHONE else 10)
 
 
 def test_street_names_of_a_stop_in_hand_are_clear(
@@ -115,7 +117,7 @@ def test_names_of_a_dense_town_keep_to_their_number(open_page: Open, tmp_path: P
     for _ in range(3):
         page.locator("[data-map=in]").click()
         shown = read_streets(page)
-        assert len(shown["names"]) <= MOST_NAMES
+        assert 40 <= len(shown["names"]) <= MOST_NAMES
         assert clashes(shown) == {}
 
 
@@ -163,8 +165,9 @@ def test_scripts_move_lines_aside_as_geos_does(browser: Browser) -> None:
 
     def moved(line: np.ndarray, by: float) -> np.ndarray:
         return np.array(
-            page.evaluate(f"([line, by]) => {{ {source}\nreturn offsetLine(line, by); }}",
-                [line.tolist(), by])
+            page.evaluate(
+                f"([line, by]) => {{ {source}\nreturn offsetLine(line, by); }}", [line.tolist(), by]
+            )
         )
 
     x = np.linspace(0, 400, 60)
@@ -195,6 +198,9 @@ def test_ground_has_other_inks_in_each_theme(open_page: Open, road_day: tuple[Pa
     inks = set()
     for theme in ("paper", "glare", "night"):
         page = open_page(road_day[1], now=AFTER, theme=theme)
+        page.locator("#stop-9 .row-open").click()
+        for _ in range(6):  # roads near by are wider than a pixel
+            page.locator("[data-map=in]").click()
         colours = page.evaluate(
             """() => {
               const canvas = document.querySelector("canvas.ground");

@@ -146,6 +146,14 @@ function streetText({ box, name, classes, size }) {
   }, name);
 }
 
+// The degrees at the rim of the map.
+function degreeBoxes() {
+  return [...document.querySelectorAll(".grid text")].map((text) => {
+    const { x, y, width: w, height: h } = text.getBBox();
+    return { x, y, w, h };
+  });
+}
+
 onRoads.drawStreets = (sheet, map, items, given, leaders) => {
   const group = svg("g", { class: "streets" });
   sheet.drawing.append(group);
@@ -155,7 +163,7 @@ onRoads.drawStreets = (sheet, map, items, given, leaders) => {
     view: seen.view,
     dots: given.dots,
     boxes: [...labels.map((item) => upright(item.spot)), ...seen.blocked.map(upright),
-      ...onRoads.signs.map(upright)],
+      ...onRoads.signs.map(upright), ...degreeBoxes().map(upright)],
     leaders: labels.map((item) => item.spot.leader),
     segments: given.segments,
   };

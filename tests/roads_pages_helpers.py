@@ -83,7 +83,7 @@ class Streets:
         self.tree = cKDTree(self._plane(self.nodes))
 
     def _add(self, way: osmium.osm.Way) -> None:
-        name = way.tags.get("name", "")
+        name = way.tags.get("name") or ""
         path = tuple((node.lat, node.lon) for node in way.nodes)
         kind = KIND_OF.get(way.tags["highway"], BackdropKind.LOCAL)
         self.lines.append(BackdropLine(kind=kind, name=name, path=path))
@@ -100,8 +100,8 @@ class Streets:
 
     def nearest(self, place: Place) -> tuple[Place, float]:
         """Return the nearest node, and how many metres off it is."""
-        distance, number = self.tree.query(self._plane([place]))
-        return self.nodes[int(number[0])], float(distance[0])
+        distance, number = self.tree.query(self._plane([place])[0])
+        return self.nodes[int(number)], float(distance)
 
     def way(
         self, start: Place, end: Place
@@ -139,7 +139,8 @@ def _round_trip(base: Place, places: list[Place]) -> list[Place]:
 
 def _moved_sites(plan: Plan) -> Plan:
     """Move the sites of each tour to places of the demo's register that lie together."""
-    free, moved = _demo_places(), {}
+    free = _demo_places()
+    moved: dict[str, Place] = {}
     bases = {base.base_id: (base.lat_deg, base.lon_deg) for base in plan.programme.bases}
     for number, tour in enumerate(plan.tours):
         middle = free[(number * 37 + 11) % len(free)]
@@ -160,7 +161,7 @@ def _on_streets(leg: Leg, points: dict[str, RoadPoint]) -> Leg:
     start, end = points[leg.from_id], points[leg.to_id]
     path, roads = streets().way((start.lat_deg, start.lon_deg), (end.lat_deg, end.lon_deg))
     length = sum(metres for _, metres in roads)
-    if len(path) < 2:
+    if len(path) == 1:
         path = (path[0], path[0])
     return replace(leg, path=path, roads=roads, dist_m=length)
 

@@ -21,7 +21,7 @@ if TYPE_CHECKING:
 
     from numpy.typing import NDArray
 
-    from georoute.domain.plan import BackdropLine, Plan
+    from georoute.domain.plan import Plan
 
 __all__ = ["DETAILS", "MAIN_ONLY", "Detail", "Ground", "box_around", "fitting"]
 
@@ -29,6 +29,8 @@ _FINEST_M = 6.0
 _SHORTEST_M = 12.0
 """A piece of road shorter than this is not drawn."""
 _ROUND = 2
+_RING = 4
+"""The rim of a water has this many points at least, the last like the first."""
 _WIDEST = 1.9
 """A map may be this many times as wide as high, or as high as wide."""
 _WATER_BEYOND = 2.0
@@ -107,7 +109,9 @@ class Ground:
         for line in plan.backdrop:
             points = flat.forward(line.path)
             if line.kind is BackdropKind.WATER:
-                lakes += [shapely.make_valid(shapely.Polygon(points))] if len(points) > 3 else []
+                lakes += (
+                    [shapely.make_valid(shapely.Polygon(points))] if len(points) >= _RING else []
+                )
             elif len(points) > 1:
                 groups[line.kind, line.name].append(points)
         merged: dict[BackdropKind, list[Named]] = {kind: [] for kind in _KEYS}

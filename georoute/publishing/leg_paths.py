@@ -62,7 +62,7 @@ def _by_ship(points: NDArray[np.float64], ferries: Sequence[shapely.Geometry]) -
     ends = shapely.points(points)
     if ferries:
         lines = shapely.union_all(list(ferries))
-        near = shapely.distance(ends, lines) <= _ON_FERRY_M
+        near = np.asarray(shapely.distance(ends, lines)) <= _ON_FERRY_M
         on = near[:-1] & near[1:] & (shapely.distance(middles, lines) <= _ON_FERRY_M)
         if on.any():
             return [bool(step) for step in on]
@@ -76,7 +76,7 @@ def pieces_of(leg: Leg, ground: Ground) -> list[Piece]:
     if not leg.path:
         return []
     points = ground.flat.forward(leg.path)
-    if not leg.ferry or len(points) < 2:
+    if not leg.ferry or len(points) <= 1:
         return [Piece(points, ferry=False)]
     ferries = [shape for _, shape in ground.lines[BackdropKind.FERRY]]
     ship = _by_ship(points, ferries)

@@ -107,7 +107,8 @@ def _where_m(
     """Return all tours and places in metres; the ground is shown around them."""
     index = edition.index
     stops = [index.sites[stop.site_id] for tour in edition.plan.tours for stop in tour.stops]
-    places = [(place.lat_deg, place.lon_deg) for place in (*index.bases.values(), *stops)]
+    places = [(base.lat_deg, base.lon_deg) for base in index.bases.values()]
+    places += [(site.lat_deg, site.lon_deg) for site in stops]
     lines = [tour_m(tour, ground.flat) for tour in edition.plan.tours]
     return lines, ground.flat.forward(places)
 

@@ -24,6 +24,9 @@ _M_PER_DEG = 111_195.0
 _GENTLE = 1.0
 """1 + the cosine of a turn from which corners are mitred: turns up to 90 degrees."""
 _ARC_STEP = math.pi / 6
+_CORNERED = 3
+"""A line with a corner has this many points."""
+_ON_THE_SPOT = 1e-9
 
 
 @dataclass(frozen=True, slots=True)
@@ -62,12 +65,12 @@ class Flat:
 
 def thinned(points: NDArray[np.float64], tolerance: float) -> NDArray[np.float64]:
     """Return a line, shape (n, 2), without what lies within ``tolerance`` of it; ends stay."""
-    if len(points) < 3:
+    if len(points) < _CORNERED:
         return points
     line = shapely.LineString(points).simplify(tolerance, preserve_topology=False)
     kept = np.asarray(shapely.get_coordinates(line), np.float64)
     # a line that comes back to its start within the tolerance keeps its farthest point
-    if len(kept) == 2 and np.allclose(kept[0], kept[1]):
+    if len(kept) < _CORNERED and np.allclose(kept[0], kept[1]):
         far = np.hypot(*(points - points[0]).T).argmax()
         kept = points[[0, int(far), -1]]
     return kept
@@ -99,10 +102,10 @@ def moved_aside(points: NDArray[np.float64], by: float) -> NDArray[np.float64]:
     """
     step = np.diff(points, axis=0)
     length = np.hypot(step[:, 0], step[:, 1])
-    kept = length > 1e-9
+    kept = length > _ON_THE_SPOT
     points = np.vstack([points[:1], points[1:][kept]])
     step, length = step[kept], length[kept]
-    if len(points) < 2:
+    if len(points) <= 1:
         return points
     normal = np.column_stack([-step[:, 1], step[:, 0]]) / length[:, None]
     moved = [points[0] + normal[0] * by]
@@ -112,7 +115,7 @@ def moved_aside(points: NDArray[np.float64], by: float) -> NDArray[np.float64]:
         turn = float(before[0] * after[1] - before[1] * after[0])
         inner = turn * by > 0
         room = min(length[k - 1], length[k])
-        reach = abs(by * turn) / max(open_, 1e-9)
+        reach = abs(by * turn) / max(open_, _ON_THE_SPOT)
         if open_ >= _GENTLE and (not inner or reach <= room):
             moved.append(corner + (before + after) / open_ * by)
         elif inner:

@@ -16,6 +16,7 @@ _SHORT_M = 60.0
 """A road driven for less is a crossing or a slip road; it is counted, not named."""
 _TOLD_APART_M = 30.0
 _ROUND_M = 10.0
+_KM_M = 1000.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,9 +43,9 @@ def _merged(roads: tuple[tuple[str, float], ...]) -> list[tuple[str, float]]:
 
 def _length(metres: float, figures: Figures) -> str:
     rounded = max(_ROUND_M, round(metres / _ROUND_M) * _ROUND_M)
-    if rounded < 1000:
+    if rounded < _KM_M:
         return figures.words("scale_metres", metres=f"{rounded:.0f}")
-    return figures.words("kilometres", km=figures.number(metres / 1000, 1))
+    return figures.words("kilometres", km=figures.number(metres / _KM_M, 1))
 
 
 def _roads_text(leg: Leg, figures: Figures) -> str:

@@ -9,6 +9,8 @@ import shapely
 from shapely.geometry import GeometryCollection, LineString, Point
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from numpy.typing import NDArray
     from shapely.geometry.base import BaseGeometry
 
@@ -18,9 +20,10 @@ _OFF_M = 0.5
 """How far off the shore a point is taken, to see on which side a face lies."""
 
 
-def _sides(coast: list[BaseGeometry]) -> tuple[list[BaseGeometry], list[BaseGeometry]]:
+def _sides(coast: Sequence[BaseGeometry]) -> tuple[list[Point], list[Point]]:
     """Return points just off the shore: those on land (left of it) and those in the water."""
-    land, sea = [], []
+    land: list[Point] = []
+    sea: list[Point] = []
     for line in coast:
         points = shapely.get_coordinates(line)
         step = np.diff(points, axis=0)
@@ -33,7 +36,7 @@ def _sides(coast: list[BaseGeometry]) -> tuple[list[BaseGeometry], list[BaseGeom
     return land, sea
 
 
-def _sea(box: BaseGeometry, coast: list[BaseGeometry]) -> list[BaseGeometry]:
+def _sea(box: BaseGeometry, coast: Sequence[BaseGeometry]) -> list[BaseGeometry]:
     """Return the faces that the shore cuts from a box and that lie right of it.
 
     A shore that breaks off within the box leaves a face with land and water at once: such a face
@@ -51,7 +54,7 @@ def _sea(box: BaseGeometry, coast: list[BaseGeometry]) -> list[BaseGeometry]:
 
 
 def water_in(
-    box_m: NDArray[np.float64], coast: list[BaseGeometry], lakes: list[BaseGeometry]
+    box_m: NDArray[np.float64], coast: Sequence[BaseGeometry], lakes: Sequence[BaseGeometry]
 ) -> BaseGeometry:
     """Return sea and lakes within a box (west, south, east, north), without overlaps."""
     box = shapely.box(*box_m)

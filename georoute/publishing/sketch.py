@@ -23,7 +23,6 @@ from georoute.publishing.sketch_roads import (
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
-
     from shapely.geometry.base import BaseGeometry
 
     from georoute.domain.sites import Base
@@ -239,7 +238,7 @@ def _obstacles(
         shapely.buffer(shapely.points(points), 9.0),
         shapely.buffer(shapely.linestrings(segments.reshape(-1, 2, 2)), 4.0),
     ]
-    found = shapely.union_all(np.concatenate(shapes))
+    found = shapely.union_all([shapely.union_all(some) for some in shapes])
     shapely.prepare(found)
     return found
 

@@ -115,7 +115,7 @@ def cords_of(
         cords = []
         for piece in pieces_of(leg, ground):
             line = moved_aside(thinned(on_paper(piece.points), _THIN), _ASIDE * side)
-            if len(line) < 2:
+            if len(line) <= 1:
                 continue
             home = number == len(tour.legs) - 1
             kind = "ferry" if piece.ferry else "home" if home else "way"

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections import defaultdict
+from itertools import pairwise
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -28,7 +29,7 @@ Run = tuple[int, "NDArray[np.float64]"]
 
 def _edges(leg: Leg) -> list[Edge]:
     nodes = [(round(lat / STEP_DEG), round(lon / STEP_DEG)) for lat, lon in leg.path]
-    return list(zip(nodes[:-1], nodes[1:], strict=True))
+    return list(pairwise(nodes))
 
 
 def _free_slot(taken: Sequence[set[int]]) -> int:
@@ -68,9 +69,9 @@ def runs_of(tours: Sequence[DayTour], flat: Flat) -> list[list[list[Run]]]:
     found = []
     for tour in tours:
         mine: dict[Edge, set[int]] = defaultdict(set)
-        legs = []
+        legs: list[list[Run]] = []
         for leg in tour.legs:
-            if len(leg.path) < 2:
+            if not leg.path:
                 legs.append([])
                 continue
             points = flat.forward(leg.path)
@@ -81,9 +82,7 @@ def runs_of(tours: Sequence[DayTour], flat: Flat) -> list[list[list[Run]]]:
             for edge, slot in zip(edges, slots, strict=True):
                 mine[edge].add(slot)
             cuts = [0, *(k for k in range(1, len(slots)) if slots[k] != slots[k - 1]), len(slots)]
-            legs.append(
-                [(slots[a], points[a : b + 1]) for a, b in zip(cuts[:-1], cuts[1:], strict=True)]
-            )
+            legs.append([(slots[a], points[a : b + 1]) for a, b in pairwise(cuts) if a < b])
         # a tour that drives a road twice keeps its slot there
         for edge, slots_here in mine.items():
             taken[edge] |= slots_here

@@ -15,7 +15,8 @@ _READ = """() => {
   const corners = text => {
     const b = text.getBBox();
     const m = text.getScreenCTM();
-    return [[b.x, b.y], [b.x + b.width, b.y], [b.x + b.width, b.y + b.height], [b.x, b.y + b.height]]
+    const [right, low] = [b.x + b.width, b.y + b.height];
+    return [[b.x, b.y], [right, b.y], [right, low], [b.x, low]]
       .map(([x, y]) => [m.a * x + m.c * y + m.e, m.b * x + m.d * y + m.f]);
   };
   const box = e => {
@@ -24,7 +25,8 @@ _READ = """() => {
   };
   const seen = e => e.offsetWidth > 0 && getComputedStyle(e).visibility === "visible";
   const over = ".map-tools, .north, .map-note, .map-fold, .leaflet-control-scale";
-  const lines = [...document.querySelectorAll(".sheet polyline.cord-edge, .sheet polyline.ferry-leg")];
+  const kinds = ".sheet polyline.cord-edge, .sheet polyline.ferry-leg";
+  const lines = [...document.querySelectorAll(kinds)];
   const where = document.querySelector(".sheet").getScreenCTM();
   return {
     frame: box(document.querySelector(".map-frame")),
@@ -43,15 +45,19 @@ _READ = """() => {
 }"""
 
 
+Box = tuple[float, float, float, float]
+"""Left, top, right, bottom."""
+
+
 class Streets(TypedDict):
     """What the page shows."""
 
-    frame: list[float]
+    frame: Box
     names: list[tuple[str, list[list[float]]]]
     sizes: list[float]
-    labels: list[list[float]]
-    controls: list[list[float]]
-    dots: list[list[float]]
+    labels: list[Box]
+    controls: list[Box]
+    dots: list[Box]
     cords: list[list[list[float]]]
 
 

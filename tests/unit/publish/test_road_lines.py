@@ -40,8 +40,9 @@ def tour() -> list[np.ndarray]:
     return [tour_m(plan.tours[0], Ground.of(plan).flat)]
 
 
-def decoded(told: dict[str, list[int]]) -> list[list[tuple[float, float]]]:
+def decoded(told: object) -> list[list[tuple[float, float]]]:
     """Read lines back as a page does: running sums, cut by sizes."""
+    assert isinstance(told, dict)
     steps = np.cumsum(np.array(told["flat"]).reshape(-1, 2), axis=0) * STEP_DEG
     ends = np.cumsum([0, *told["sizes"]])
     return [[tuple(p) for p in steps[a:b]] for a, b in pairwise(ends)]
@@ -113,7 +114,7 @@ def test_paths_of_legs_come_back_from_their_differences() -> None:
     for leg in plan.tours[0].legs:
         told = told_pieces(pieces_of(leg, ground), ground.flat)
         back = [np.cumsum(np.array(p[1:]).reshape(-1, 2), axis=0) * STEP_DEG for p in told]
-        line = ground.flat.forward(np.vstack(back))
+        line = ground.flat.forward([(a, b) for a, b in np.vstack(back)])
         there = shapely.LineString(ground.flat.forward(leg.path))
         assert shapely.LineString(line).hausdorff_distance(there) < 2.5 + STEP_M
         assert [piece[0] for piece in told] == ([0, 1, 0] if leg.ferry else [0])
@@ -142,7 +143,7 @@ def test_ground_is_cut_to_view_and_tour(ground: Ground, tour: list[np.ndarray]) 
     mains = [shapely.LineString(ground.flat.forward(p)) for p in decoded(told["main"])]
     assert all(frame.contains(part) for part in mains)
     raw = [ground.flat.forward(s.path) for s in streets().lines if s.kind is BackdropKind.MAIN]
-    length = sum(shapely.intersection(shapely.linestrings(r), frame).length for r in raw)
+    length = sum(shapely.LineString(r).intersection(frame).length for r in raw)
     assert sum(part.length for part in mains) == pytest.approx(length, rel=0.01)
 
 

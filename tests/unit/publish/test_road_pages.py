@@ -12,7 +12,7 @@ from html.parser import HTMLParser
 
 import pytest
 
-from georoute.domain.plan import Leg, RoadPoint
+from georoute.domain.plan import Leg, Plan, RoadPoint
 from georoute.publishing.figures import Figures
 from georoute.publishing.page_budget import AIM_BYTES, MOST_BYTES
 from georoute.publishing.pages import pages_of
@@ -28,7 +28,7 @@ MIXED = "thin broken lines are straight, not along roads"
 TAGS = re.compile(r"(?s)<(script|style)\b.*?</\1>|<[^>]+>")
 
 
-def kinds(plan, language: str = "en") -> dict[str, str]:  # noqa: ANN001  # any plan
+def kinds(plan: Plan, language: str = "en") -> dict[str, str]:
     """Return overview, first day page and first sheet by kind."""
     pages = pages_of(plan, issued=None, language=language)
     found = {name.split("_")[0].removesuffix(".html"): page for name, page in pages.items()}

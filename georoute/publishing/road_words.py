@@ -31,12 +31,12 @@ NO_WAY = WayWords()
 
 
 def _merged(roads: tuple[tuple[str, float], ...]) -> list[tuple[str, float]]:
-    """Return named roads in the order driven; crossings between two parts of one do not part it."""
+    """Return roads in the order driven; crossings and slip roads do not part one."""
     merged: list[tuple[str, float]] = []
     for name, metres in roads:
         if merged and (merged[-1][0] == name or (not name and metres < _SHORT_M)):
             merged[-1] = (merged[-1][0], merged[-1][1] + metres)
-        else:
+        elif not name or metres >= _SHORT_M:
             merged.append((name, metres))
     return merged
 
@@ -50,11 +50,17 @@ def _length(metres: float, figures: Figures) -> str:
 
 def _roads_text(leg: Leg, figures: Figures) -> str:
     words, merged = figures.words, _merged(leg.roads)
-    named = [k for k, (name, metres) in enumerate(merged) if name and metres >= _SHORT_M]
+    named = [k for k, (name, _) in enumerate(merged) if name]
     if not named:
         return words("way_unnamed")
     longest = sorted(sorted(named, key=lambda k: -merged[k][1])[:_MOST_NAMES])
-    parts = [f"{merged[k][0]} {_length(merged[k][1], figures)}" for k in longest]
+    told: list[tuple[str, float]] = []
+    for name, metres in (merged[k] for k in longest):
+        if told and told[-1][0] == name:  # a shorter road between its two parts is not told
+            told[-1] = (name, told[-1][1] + metres)
+        else:
+            told.append((name, metres))
+    parts = [f"{name} {_length(metres, figures)}" for name, metres in told]
     text = words("way_then").join(parts)
     # only named roads are counted: data parts an unnamed one at will
     others = len({merged[k][0] for k in named} - {merged[k][0] for k in longest})

@@ -42,6 +42,8 @@ _MOST_NAMES = 14
 _LETTER, _HALF_HIGH = 5.3, 5.6
 """The width of a letter of a name, and half its height; the face may differ, so it is wide."""
 _BESIDE = _HALF_HIGH + 5.5
+_BESIDES = (0.0, -_BESIDE, _BESIDE, -_BESIDE - 6.0, _BESIDE + 6.0)
+"""Where the name of a road that carries a cord may stand, across its line."""
 _TRIES = 9
 _BEND = 2.2
 
@@ -176,7 +178,7 @@ def _place_name(
             continue
         box, turn = found
         across = math.radians(turn + 90)
-        for off in (0.0, -_BESIDE, _BESIDE) if driven else (0.0,):
+        for off in _BESIDES if driven else (0.0,):
             moved = affinity.translate(box, off * math.cos(across), off * math.sin(across))
             if frame.contains(moved) and not obstacles.intersects(moved):
                 x, y = moved.centroid.x, moved.centroid.y

@@ -104,7 +104,7 @@ function tryStreet(street, half, scene, placed) {
   if (free < 0) return null;
   const step = Math.max(18, free / MOST_TRIES);
   const beside = half.hh + 8;
-  const asides = street.rank === 0 ? [0, -beside, beside] : [0];
+  const asides = street.rank === 0 ? [0, -beside, beside, -beside - 6, beside + 6] : [0];
   for (let k = 0; k * step <= free; k += 1) {
     const from = k % 2 ? -1 : 1; // from the middle outwards
     const box = boxAlong(street.points, street.long / 2 + (from * Math.ceil(k / 2) * step), half);

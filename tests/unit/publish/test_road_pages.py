@@ -91,6 +91,11 @@ def test_roads_of_a_leg_are_told_in_the_order_driven() -> None:
     )
 
 
+def test_two_parts_of_a_road_are_told_as_one() -> None:
+    leg = leg_on(("Ruta 5", 1200.0), ("", 300.0), ("Salida", 40.0), ("Ruta 5", 8000.0))
+    assert way_words(leg, figures()).roads == "By Ruta 5 9.2 km."
+
+
 def test_legs_without_names_and_without_roads() -> None:
     assert "no name" in way_words(leg_on(("", 900.0)), figures()).roads
     straight = sample_plan().tours[0].legs[0]

@@ -44,8 +44,8 @@ _LETTER, _HALF_HIGH = 5.3, 5.6
 _BESIDE = _HALF_HIGH + 5.5
 _BESIDES = (0.0, -_BESIDE, _BESIDE, -_BESIDE - 6.0, _BESIDE + 6.0)
 """Where the name of a road that carries a cord may stand, across its line."""
-_TRIES = 9
-_BEND = 2.2
+_TRIES = 15
+_BEND = 3.4
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -152,7 +152,7 @@ def _box_on(line: BaseGeometry, middle: float, half: float) -> tuple[BaseGeometr
     at = shapely.get_coordinates(line.interpolate([middle + half * k / 3 for k in range(-3, 4)]))
     chord = at[-1] - at[0]
     length = float(np.hypot(*chord))
-    if length < 1.9 * half:
+    if length < 1.85 * half:
         return None
     off = np.abs(chord[0] * (at[:, 1] - at[0, 1]) - chord[1] * (at[:, 0] - at[0, 0])) / length
     if off.max() > _BEND:

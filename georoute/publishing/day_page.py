@@ -7,18 +7,27 @@ from typing import TYPE_CHECKING
 from georoute.publishing.day_view import day_view
 from georoute.publishing.frame import DataLayer, Page, SurveyMap
 from georoute.publishing.island import differences
+from georoute.publishing.leg_paths import APART_M, any_roads, pieces_of, told_pieces, tour_m
 from georoute.publishing.looks import looks_of
 from georoute.publishing.names import OVERVIEW_NAME, page_name
+from georoute.publishing.page_budget import page_on_ground
+from georoute.publishing.road_lines import STEP_DEG
 
 if TYPE_CHECKING:
+    import numpy as np
+    from numpy.typing import NDArray
+
     from georoute.domain.plan import DayTour
     from georoute.publishing.day_view import DayView
+    from georoute.publishing.ground import Ground
     from georoute.publishing.page_values import Edition
 
 __all__ = ["day_page", "view_of"]
 
 _SCRIPTS = ("base.js", "labels.js", "map.js", "day.js")
 _STYLES = ("page.css", "day.css", "print.css")
+_ROAD_SCRIPTS = ("base.js", "labels.js", "map.js", "cords.js", "ground.js", "streets.js", "day.js")
+_ROAD_STYLES = (*_STYLES[:-1], "roads.css", "print.css")
 
 
 def view_of(edition: Edition, tour: DayTour) -> DayView:
@@ -68,11 +77,44 @@ def _island(edition: Edition, view: DayView) -> dict[str, object]:
     }
 
 
+def _road_island(edition: Edition, tour: DayTour, ground: Ground) -> dict[str, object]:
+    """Return what a tour on roads adds: pieces of legs, last metres, roads driven, a word."""
+    ends = [tour.start_base_id]
+    if tour.end_base_id != tour.start_base_id:
+        ends.append(tour.end_base_id)
+    apart = []
+    for number, place in enumerate([*ends, *(stop.site_id for stop in tour.stops)]):
+        point = edition.index.road_points.get(place)
+        if point is not None and point.distance_m >= APART_M:
+            lat, lon = point.lat_deg, edition.lon(point.lon_deg)
+            apart += [number, round(lat / STEP_DEG), round(lon / STEP_DEG)]
+    return {
+        "ways": [told_pieces(pieces_of(leg, ground), ground.flat) for leg in tour.legs],
+        "apart": apart,
+        "driven": sorted({name for leg in tour.legs for name, _ in leg.roads if name}),
+        "ferry_sign": edition.figures.words("ferry_sign"),
+    }
+
+
+def _where_m(
+    view: DayView, ground: Ground
+) -> tuple[list[NDArray[np.float64]], NDArray[np.float64]]:
+    """Return the tour and its places in metres; the ground is shown around them."""
+    places = [(base.lat_deg, base.lon_deg) for base in (view.start_base, view.end_base)]
+    places += [(stop.lat_deg, stop.lon_deg) for stop in view.stops]
+    return [tour_m(view.tour, ground.flat)], ground.flat.forward(places)
+
+
 def day_page(edition: Edition, tour: DayTour) -> str:
     """Return the day page of a tour as HTML."""
     words = edition.figures.words
     view = view_of(edition, tour)
-    page = Page(template="day.html", scripts=_SCRIPTS, styles=_STYLES)
+    on_roads = edition.ground is not None and any_roads(tour.legs)
+    page = Page(
+        template="day.html",
+        scripts=_ROAD_SCRIPTS if on_roads else _SCRIPTS,
+        styles=_ROAD_STYLES if on_roads else _STYLES,
+    )
     survey_map = SurveyMap("map_name")
     survey_map.add_child(DataLayer("drawDay"))
     page.add_child(survey_map)
@@ -94,5 +136,12 @@ def day_page(edition: Edition, tour: DayTour) -> str:
             finish=view.finish,
         ),
         "about": [*edition.about(), words("library")],
+        "map_note": edition.map_note([tour]),
+        "on_roads": on_roads,
     }
-    return page.page_text(_island(edition, view), values)
+    island = _island(edition, view)
+    if edition.ground is None or not on_roads:
+        return page.page_text(island, values)
+    island["roads"] = _road_island(edition, tour, edition.ground)
+    where_m = _where_m(view, edition.ground)
+    return page_on_ground(page, island, values, edition.ground, where_m)

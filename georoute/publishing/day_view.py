@@ -6,6 +6,8 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from georoute.domain.instants import elapsed_s
+from georoute.publishing.leg_paths import road_points_of
+from georoute.publishing.road_words import WayWords, last_metres, way_words
 from georoute.publishing.time_rule import TimeRule, time_rule
 
 if TYPE_CHECKING:
@@ -13,7 +15,7 @@ if TYPE_CHECKING:
     from datetime import date, datetime
 
     from georoute.domain.people import Inspector, Shift
-    from georoute.domain.plan import DayTour, Leg, Plan, Stop
+    from georoute.domain.plan import DayTour, Leg, Plan, RoadPoint, Stop
     from georoute.domain.sites import Base, Site, Visit
     from georoute.publishing.figures import Figures
     from georoute.publishing.looks import TourLook
@@ -31,6 +33,7 @@ class PlanIndex:
     bases: Mapping[str, Base]
     inspectors: Mapping[str, Inspector]
     shifts: Mapping[str, Shift]
+    road_points: Mapping[str, RoadPoint]
 
     @classmethod
     def of(cls, plan: Plan) -> PlanIndex:
@@ -42,6 +45,7 @@ class PlanIndex:
             bases={base.base_id: base for base in programme.bases},
             inspectors={person.inspector_id: person for person in programme.inspectors},
             shifts={shift.shift_id: shift for shift in programme.shifts()},
+            road_points=road_points_of(plan),
         )
 
 
@@ -74,6 +78,8 @@ class StopView:
     leg_drive: str
     leg_length: str
     leave_ms: int
+    way: WayWords
+    off_road: str
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -95,6 +101,8 @@ class DayView:
     stops: tuple[StopView, ...]
     home_drive: str
     home_length: str
+    home_way: WayWords
+    has_ferry: bool
     proof: str
     rule: TimeRule
 
@@ -183,6 +191,8 @@ def _stop_view(index: PlanIndex, tour: DayTour, stop: Stop, leg: Leg, figures: F
         leg_drive=figures.drive(leg.drive_s),
         leg_length=figures.length(leg.dist_m),
         leave_ms=_milliseconds(stop.leave),
+        way=way_words(leg, figures),
+        off_road=last_metres(index.road_points.get(site.site_id), figures) if leg.path else "",
     )
 
 
@@ -249,6 +259,8 @@ def day_view(index: PlanIndex, tour: DayTour, look: TourLook, figures: Figures) 
         stops=stops,
         home_drive=figures.drive(tour.legs[-1].drive_s),
         home_length=figures.length(tour.legs[-1].dist_m),
+        home_way=way_words(tour.legs[-1], figures),
+        has_ferry=any(leg.ferry for leg in tour.legs),
         proof=_proof(tour, figures),
         rule=time_rule(tour, shift, index.visits, [stop.state for stop in stops], figures),
     )

@@ -5,13 +5,21 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from georoute.publishing.frame import DataLayer, Page, SurveyMap
-from georoute.publishing.island import differences
+from georoute.publishing.ground import MAIN_ONLY
+from georoute.publishing.island import differences, island_json
+from georoute.publishing.leg_paths import tour_m
 from georoute.publishing.looks import WEEKDAY_LOOKS
 from georoute.publishing.names import OFFICE_NAME
 from georoute.publishing.overview_view import overview_view
+from georoute.publishing.page_budget import page_on_ground
+from georoute.publishing.strands import runs_of, told_runs
 
 if TYPE_CHECKING:
+    import numpy as np
+    from numpy.typing import NDArray
+
     from georoute.domain.sites import Base, Site
+    from georoute.publishing.ground import Ground
     from georoute.publishing.overview_view import OverviewView, TourRow
     from georoute.publishing.page_values import Edition
 
@@ -19,6 +27,11 @@ __all__ = ["overview_page"]
 
 _SCRIPTS = ("base.js", "labels.js", "map.js", "overview.js")
 _STYLES = ("page.css", "overview.css", "print.css")
+_ROAD_SCRIPTS = (*_SCRIPTS[:-1], "cords.js", "ground.js", "streets.js", "overview.js")
+_ROAD_STYLES = (*_STYLES[:-1], "roads.css", "print.css")
+_MOST_STRAND_BYTES = 110_000
+_STRAND_M = (8.0, 15.0, 30.0, 60.0, 120.0, 250.0)
+"""Strands are told to this many metres, more coarsely where a plan has very many."""
 
 
 _STEP_DEG = 1e-5
@@ -77,6 +90,29 @@ def _island(edition: Edition, view: OverviewView) -> dict[str, object]:
     }
 
 
+def _road_island(edition: Edition, ground: Ground) -> dict[str, object]:
+    """Return the runs of all strands, as finely as they may be told."""
+    tours = runs_of(edition.plan.tours, ground.flat)
+    told: dict[str, object] = {}
+    for tolerance_m in _STRAND_M:
+        told = {"runs": [told_runs(legs, ground.flat, tolerance_m) for legs in tours]}
+        if len(island_json(told)) <= _MOST_STRAND_BYTES:
+            break
+    return {**told, "driven": []}
+
+
+def _where_m(
+    edition: Edition, ground: Ground
+) -> tuple[list[NDArray[np.float64]], NDArray[np.float64]]:
+    """Return all tours and places in metres; the ground is shown around them."""
+    index = edition.index
+    stops = [index.sites[stop.site_id] for tour in edition.plan.tours for stop in tour.stops]
+    places = [(base.lat_deg, base.lon_deg) for base in index.bases.values()]
+    places += [(site.lat_deg, site.lon_deg) for site in stops]
+    lines = [tour_m(tour, ground.flat) for tour in edition.plan.tours]
+    return lines, ground.flat.forward(places)
+
+
 def _column_words(view: OverviewView) -> str:
     """Return the style that puts the word of its column before each figure on a phone.
 
@@ -93,8 +129,12 @@ def overview_page(edition: Edition) -> str:
     """Return the overview page as HTML."""
     words = edition.figures.words
     view = overview_view(edition.plan, edition.index, edition.slugs, edition.figures)
+    ground = edition.ground
     page = Page(
-        template="overview.html", scripts=_SCRIPTS, styles=_STYLES, own_style=_column_words(view)
+        template="overview.html",
+        scripts=_ROAD_SCRIPTS if ground else _SCRIPTS,
+        styles=_ROAD_STYLES if ground else _STYLES,
+        own_style=_column_words(view),
     )
     survey_map = SurveyMap("map_overview_name")
     survey_map.add_child(DataLayer("drawOverview"))
@@ -106,4 +146,8 @@ def overview_page(edition: Edition) -> str:
         "office_href": OFFICE_NAME,
         "about": [*edition.about(), words("library")],
     }
-    return page.page_text(_island(edition, view), values)
+    island = _island(edition, view)
+    if ground is None:
+        return page.page_text(island, values)
+    island["roads"] = _road_island(edition, ground)
+    return page_on_ground(page, island, values, ground, _where_m(edition, ground), MAIN_ONLY)

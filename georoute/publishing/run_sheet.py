@@ -23,15 +23,16 @@ def run_sheet(edition: Edition, tour: DayTour) -> str:
     """Return the run sheet of a tour as HTML."""
     words = edition.figures.words
     view = view_of(edition, tour)
-    style = own("sheet.css")
+    style = own("sheet.css") + (own("sheet_roads.css") if edition.ground else "")
     return (
         environment()
         .get_template("sheet.html")
         .render(
-            **edition.common(),
+            **edition.common() | {"map_note": edition.map_note([tour])},
             title=words("day_title", date=view.date_long, inspector=view.inspector),
             day=view,
-            sketch=sketch_of(view, words, side=edition.side()),
+            sketch=sketch_of(view, words, side=edition.side(), ground=edition.ground),
+            ferry_sign=words("ferry_sign"),
             hue=HUES[view.look.hue],
             width=WIDTH,
             height=HEIGHT,

@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING
 
 from georoute.publishing.words_es import SPANISH
 from georoute.publishing.words_office import OFFICE_ENGLISH, OFFICE_SPANISH
+from georoute.publishing.words_roads import ROADS_ENGLISH, ROADS_SPANISH
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -213,8 +214,8 @@ ENGLISH: dict[str, str] = {
 }
 
 LANGUAGES: dict[str, dict[str, str]] = {
-    "en": ENGLISH | OFFICE_ENGLISH,
-    "es": SPANISH | OFFICE_SPANISH,
+    "en": ENGLISH | OFFICE_ENGLISH | ROADS_ENGLISH,
+    "es": SPANISH | OFFICE_SPANISH | ROADS_SPANISH,
 }
 
 

@@ -34,7 +34,8 @@ function numbered(tour) {
   });
   const count = tour.stops.length;
   const way = [0, ...tour.stops.map((stop, k) => bases + k), bases - 1];
-  tour.legs = way.slice(1).map((to, k) => ({ from: way[k], to, home: k === count }));
+  tour.legs = way.slice(1).map((to, k) => ({ from: way[k], to, home: k === count, way: [] }));
+  if (onRoads.readLegs) onRoads.readLegs(tour.legs);
   return tour;
 }
 
@@ -45,12 +46,13 @@ function drawDay(map) {
   const labels = tour.bases.map(makeBasePlate).concat(tour.stops.map(makePlate));
   const sheet = new SurveySheet((self) => paintDay(self, map, places, labels, state));
   const whole = L.latLngBounds(places.map((place) => [place.lat, place.lon]));
+  for (const leg of tour.legs) leg.way.forEach((at) => whole.extend(at));
   const padding = () => (map.getSize().x < 560 ? [34, 40] : [96, 60]);
   const fit = () => map.fitBounds(whole, { padding: padding(), maxZoom: 15, animate: false });
   const fitLeg = (number) => {
     const leg = tour.legs[number - 1];
     const ends = [[places[leg.from].lat, places[leg.from].lon],
-      [places[leg.to].lat, places[leg.to].lon]];
+      [places[leg.to].lat, places[leg.to].lon], ...leg.way];
     const room = Math.min(54, map.getSize().y / 5);
     map.fitBounds(L.latLngBounds(ends), { padding: [room, room], maxZoom: 15, animate: false });
   };
@@ -142,6 +144,10 @@ function paintDay(sheet, map, places, labels, state) {
   const barbs = svg("g", {});
   const segments = [];
   for (const leg of tour.legs) {
+    if (leg.way.length > 0) {
+      segments.push(...onRoads.drawLeg(map, leg, { cords, barbs, dash: tour.dash }));
+      continue;
+    }
     const segment = aside(points[leg.from], points[leg.to], 2.6);
     segments.push(segment);
     const kind = leg.home ? "home" : "way";
@@ -174,6 +180,8 @@ function paintDay(sheet, map, places, labels, state) {
   });
   const dots = points.map((point) => [point.x, point.y]);
   const scene = { dots, segments, dots_show: true, cord_cost: 0.55 };
+  if (onRoads.drawLastMetres) onRoads.drawLastMetres(map, points, cords);
   const leaders = setLabels(sheet, items, scene);
   sheet.drawing.append(cords, barbs, leaders, marks);
+  if (onRoads.drawStreets) onRoads.drawStreets(sheet, map, items, scene, leaders);
 }

@@ -64,6 +64,9 @@ function drawGrid(map, group) {
   }
 }
 
+// What pages with legs along roads add; the other scripts ask for it before they draw.
+const onRoads = {};
+
 // A layer with one drawing (SVG) and one set of labels (HTML), drawn anew after each move.
 const SurveySheet = L.Layer.extend({
   initialize(redraw) {
@@ -92,6 +95,7 @@ const SurveySheet = L.Layer.extend({
   },
   refresh() {
     drawGrid(this._map, this._grid);
+    if (onRoads.drawGround) onRoads.drawGround(this._map, this._svg);
     this.drawing.replaceChildren();
     this._redraw(this);
   },

@@ -143,9 +143,15 @@ function paintOverview(sheet, map, places, { tags, baseTags, state }) {
       class: `cords hue-${tour.hue}${tour.outlined ? " outlined" : ""}${faint}`,
     });
     tour.way.slice(1).forEach((to, leg) => {
+      const last = leg === tour.way.length - 2;
+      if (onRoads.drawRuns && onRoads.hasRuns(k, leg)) {
+        const drawn = onRoads.drawRuns(map, k, leg, { group, dash: tour.dash, home: last });
+        if (!faint) segments.push(...drawn);
+        return;
+      }
       const segment = aside(points[tour.way[leg]], points[to], shifts[k][leg]);
       if (!faint) segments.push(segment);
-      const home = leg === tour.way.length - 2 ? "home" : "way";
+      const home = last ? "home" : "way";
       group.append(line(segment, `cord-edge ${home}`, tour.dash));
       group.append(line(segment, `cord ${home}`, tour.dash));
     });
@@ -180,4 +186,5 @@ function paintOverview(sheet, map, places, { tags, baseTags, state }) {
   const scene = { dots, segments, dots_show: false, cord_cost: 0.2 };
   const leaders = setLabels(sheet, items, scene, news);
   sheet.drawing.append(strands, leaders, marks);
+  if (onRoads.drawStreets) onRoads.drawStreets(sheet, map, items, scene, leaders);
 }

@@ -19,15 +19,8 @@ import numpy as np
 import osmium
 from scipy.spatial import cKDTree
 
-from georoute.domain.plan import (
-    BackdropKind,
-    BackdropLine,
-    DayTour,
-    Leg,
-    Plan,
-    RoadPoint,
-    TravelNote,
-)
+from georoute.domain.plan import DayTour, Leg, Plan, TravelNote
+from georoute.domain.roads import BackdropKind, BackdropLine, RoadPoint
 from georoute.domain.sites import Base, Site
 from tests.publish_helpers import HOSTILE, sample_plan
 

@@ -15,7 +15,8 @@ if TYPE_CHECKING:
     from datetime import date, datetime
 
     from georoute.domain.people import Inspector, Shift
-    from georoute.domain.plan import DayTour, Leg, Plan, RoadPoint, Stop
+    from georoute.domain.plan import DayTour, Leg, Plan, Stop
+    from georoute.domain.roads import RoadPoint
     from georoute.domain.sites import Base, Site, Visit
     from georoute.publishing.figures import Figures
     from georoute.publishing.looks import TourLook

@@ -11,7 +11,7 @@ import shapely
 from shapely.geometry import MultiLineString
 from shapely.geometry.base import BaseGeometry
 
-from georoute.domain.plan import BackdropKind
+from georoute.domain.roads import BackdropKind
 from georoute.publishing.island import differences, island_json
 from georoute.publishing.road_lines import Flat
 from georoute.publishing.shore import water_in

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 import shapely
 
-from georoute.domain.plan import BackdropKind
+from georoute.domain.roads import BackdropKind
 from georoute.publishing.road_lines import steps_of, thinned
 
 if TYPE_CHECKING:
@@ -17,7 +17,8 @@ if TYPE_CHECKING:
 
     from numpy.typing import NDArray
 
-    from georoute.domain.plan import DayTour, Leg, Plan, RoadPoint
+    from georoute.domain.plan import DayTour, Leg, Plan
+    from georoute.domain.roads import RoadPoint
     from georoute.publishing.ground import Ground
     from georoute.publishing.road_lines import Flat
 

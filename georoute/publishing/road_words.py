@@ -6,7 +6,8 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
-    from georoute.domain.plan import Leg, RoadPoint
+    from georoute.domain.plan import Leg
+    from georoute.domain.roads import RoadPoint
     from georoute.publishing.figures import Figures
 
 __all__ = ["NO_WAY", "WayWords", "last_metres", "way_words"]

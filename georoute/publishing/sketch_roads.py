@@ -10,7 +10,7 @@ import numpy as np
 import shapely
 from shapely import affinity
 
-from georoute.domain.plan import BackdropKind
+from georoute.domain.roads import BackdropKind
 from georoute.publishing.leg_paths import APART_M, pieces_of
 from georoute.publishing.road_lines import moved_aside, thinned
 

@@ -14,7 +14,7 @@ import pytest
 import shapely
 from pyproj import Geod
 
-from georoute.domain.plan import BackdropKind
+from georoute.domain.roads import BackdropKind
 from georoute.publishing.ground import DETAILS, MAIN_ONLY, Ground, box_around, fitting
 from georoute.publishing.island import island_json
 from georoute.publishing.leg_paths import pieces_of, told_pieces, tour_m

@@ -12,7 +12,8 @@ from html.parser import HTMLParser
 
 import pytest
 
-from georoute.domain.plan import Leg, Plan, RoadPoint
+from georoute.domain.plan import Leg, Plan
+from georoute.domain.roads import RoadPoint
 from georoute.publishing.figures import Figures
 from georoute.publishing.page_budget import AIM_BYTES, MOST_BYTES
 from georoute.publishing.pages import pages_of

@@ -6,6 +6,8 @@ from typing import TYPE_CHECKING
 
 from pyproj import Geod
 
+from georoute.domain.programme import TravelMethod
+
 if TYPE_CHECKING:
     from georoute.audit.report import Report
     from georoute.domain.plan import DayTour, Leg, Plan
@@ -71,10 +73,26 @@ def _check_way(leg: Leg, tour: DayTour, points: dict[str, RoadPoint], report: Re
     _check_end(leg, leg.to_id, leg.path[-1], points, report)
 
 
+def _check_kind(leg: Leg, tour: DayTour, report: Report, *, on_roads: bool) -> None:
+    """Check that a leg has a way just where travel is along roads."""
+    told = bool(leg.path), bool(leg.roads), leg.ferry
+    fitting = told[:2] == (True, True) if on_roads else told == (False, False, False)
+    if not fitting:
+        report.fault(
+            "way_kind",
+            f"Tour {tour.tour_id}, leg {leg.order} {leg.from_id} → {leg.to_id}",
+            expected="a way along roads" if on_roads else "a straight line",
+            got=f"way {told[0]}, roads {told[1]}, ferry {told[2]}",
+            subject=tour.tour_id,
+        )
+
+
 def check_ways(plan: Plan, report: Report) -> None:
-    """Check the way of every leg that has one."""
+    """Check the way of every leg, and that there is one where travel is along roads."""
     points = {point.place_id: point for point in plan.road_points}
+    on_roads = plan.programme.travel.method is TravelMethod.ROADS
     for tour in plan.tours:
         for leg in tour.legs:
+            _check_kind(leg, tour, report, on_roads=on_roads)
             if leg.path:
                 _check_way(leg, tour, points, report)

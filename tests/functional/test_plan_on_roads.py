@@ -18,6 +18,8 @@ from georoute.pipeline import prepare
 from georoute.store import read_plan, write_plan
 from tests.spine_helpers import small_programme, small_register
 
+pytestmark = pytest.mark.slow
+
 EXTRACT = Path(__file__).parents[2] / "data" / "la_serena_coquimbo.osm.pbf"
 BASE = Base(base_id="base", name="Base", lat_deg=-29.9533, lon_deg=-71.3436)
 SPOTS = [
@@ -84,6 +86,7 @@ def test_planted_faults_are_found(planned: Plan) -> None:
     assert "way_roads" in codes(
         with_first_leg(planned, roads=((name, metres + 1.0), *first.roads[1:]))
     )
+    assert "way_kind" in codes(with_first_leg(planned, path=()))
     assert "way_end" in codes(replace(planned, road_points=planned.road_points[1:]))
     assert "travel_note" in codes(replace(planned, travel=replace(planned.travel, estimated=True)))
 

@@ -14,11 +14,12 @@ from georoute.roads.hierarchy import build_hierarchy
 from georoute.roads.network import RoadNetwork, build_network
 from georoute.roads.snapping import Snapped, road_index, snap
 from georoute.roads.travel import HierarchySearch, RoadTravel
+from tests.examples import at_most
 from tests.roads_helpers import GEOD, LAT0, LON0, random_roads
 from tests.roads_twin import PlainSearch, RoadTwin
 
 BATCHES = 8
-BATCH = 32
+BATCH = at_most(32)
 
 
 def places_on(network: RoadNetwork, seed: int) -> Snapped:

@@ -32,9 +32,12 @@ EXTRACTS = {
 PLACES = 120
 FIRST, OPEN, LAST = 0, 1, 2
 
-pytestmark = pytest.mark.source(
-    "scipy.sparse.csgraph.dijkstra on the arc-to-arc graph of the table; lengths pyproj.Geod"
-)
+pytestmark = [
+    pytest.mark.slow,
+    pytest.mark.source(
+        "scipy.sparse.csgraph.dijkstra on the arc-to-arc graph of the table; lengths pyproj.Geod"
+    ),
+]
 
 
 def turn_graph(table: RoadTable) -> csr_array:

@@ -17,6 +17,8 @@ from georoute.roads.network import build_network
 from georoute.roads.sources import read_road_source
 from georoute.roads.speeds import default_profile
 
+pytestmark = pytest.mark.slow
+
 HELSINKI = Path(__file__).parents[2] / "data" / "Helsinki.osm.pbf"
 
 

@@ -20,6 +20,8 @@ from georoute.roads.model import Seeds
 from georoute.roads.shortest import ShortestPaths
 from tests.hierarchy_helpers import Net, at_nodes, draw_seeds, grid_net, slow_matrix
 
+pytestmark = pytest.mark.slow
+
 SIDE = 142
 
 

@@ -9,9 +9,10 @@ from georoute.kernels.arrays import UNREACHABLE
 from georoute.roads.hierarchy import RoadPath, build_hierarchy, matrix, path, paths
 from georoute.roads.model import Seeds
 from georoute.roads.one_shot import build_streets, search_matrix, search_pairs
+from tests.examples import at_most
 from tests.hierarchy_helpers import Net, at_nodes, draw_net, draw_seeds, scipy_times, slow_matrix
 
-NETS = range(200)
+NETS = range(2 * at_most(100))
 
 
 def check_path(net: Net, sources: Seeds, targets: Seeds, found: RoadPath) -> None:

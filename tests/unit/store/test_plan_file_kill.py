@@ -19,11 +19,13 @@ from tests.store_helpers import example_plan
 ROOT = Path(__file__).resolve().parents[3]
 
 WRITER = """
-import itertools, sys
+import itertools, signal, sys
 from dataclasses import replace
 from georoute.store import write_plan
 from tests.store_helpers import example_plan
 plan = example_plan()
+# Where a shell started the tests in the background, children would not hear it.
+signal.signal(signal.SIGINT, signal.default_int_handler)
 print("ready", flush=True)
 for number in itertools.count():
     write_plan(replace(plan, plan_id=f"run {number}"), sys.argv[1])

@@ -101,8 +101,10 @@ def _best_end(reached: Reached, ends: Starts, place: Int) -> tuple[Int, Int]:
     best: Int = np.int64(FAR)
     seed: Int = np.int64(-1)
     for s in range(ends.ptr[place], ends.ptr[place + 1]):
+        if ends.cost[s] >= FAR:  # the sum of two that are out of reach would run over
+            continue
         cost = reached.state[ends.node[s], KEY] + ends.cost[s]
-        if ends.cost[s] < FAR and cost < best:  # the sum of two that are out of reach runs over
+        if cost < best:
             best = cost
             seed = s
     return best, seed

@@ -15,6 +15,8 @@ from tests.random_programmes_brute import best_plan
 from tests.random_programmes_draw import MOST_SHIFTS, MOST_VISITS, REGIONS
 from tests.random_programmes_judge import Verdict, judge, read
 
+pytestmark = pytest.mark.slow
+
 FEW = at_most(60)
 OTHER_SEEDS = 1_000_000
 """Seeds far from those of the long run, so that the two together see more."""

@@ -29,7 +29,7 @@ TIGHT = Recipe(visits=10, shifts=3, paid_min=(180, 300), loaded=0.5, windowed=0.
 PLAIN = replace(TIGHT, windowed=0.0, double_windowed=0.0)
 CUT = replace(TIGHT, unreachable=0.15)
 recipes = st.sampled_from([TIGHT, PLAIN, CUT])
-FEW = replace(EFFORTS["quick"], improve_steps=20)
+FEW = replace(EFFORTS["quick"], improve_steps=4)
 TINY = Recipe(visits=5, shifts=2, paid_min=(150, 300), windowed=0.2, loaded=0.3, must=0.2)
 TINY_PLAIN = replace(TINY, windowed=0.0, double_windowed=0.0)
 
@@ -39,7 +39,7 @@ def improved(
     start: Solution,
     *,
     seed: int = 1,
-    steps: int = 20,
+    steps: int = 4,
     fewest_days: bool = False,
 ) -> ImproveResult:
     return improve(

@@ -42,6 +42,7 @@ def check_parts(parts: Parts, notebook: Notebook) -> None:
     check_inspectors(parts, notebook)
     _check_calendars(parts, notebook, horizon_is_good=horizon_is_good)
     _check_choices(parts, notebook)
+    _check_sources(parts, notebook)
     _check_mapping(parts, notebook)
 
 
@@ -165,56 +166,47 @@ def _check_working_days(
 
 
 def _check_choices(parts: Parts, notebook: Notebook) -> None:
-    methods = [method.value for method in TravelMethod]
-    if parts.travel.method not in methods:
-        notebook.add(
-            Code.UNKNOWN_TRAVEL_METHOD,
-            f"there is no travel method `{parts.travel.method}`",
-            nearest_words(parts.travel.method, methods),
-            at=("travel", "method"),
-            value=parts.travel.method,
-        )
-    by_road = parts.travel.method == TravelMethod.ROADS.value
-    if by_road and not parts.writes("travel", "roads", "path"):
+    """Check every word that is one of a list."""
+    travel, search = parts.travel, parts.search
+    methods, aims = [m.value for m in TravelMethod], [aim.value for aim in Aim]
+    choices = (
+        (Code.UNKNOWN_TRAVEL_METHOD, "travel method", travel.method, methods, ("travel", "method")),
+        (Code.UNKNOWN_AIM, "aim", search.aim, aims, ("search", "aim")),
+        (Code.UNKNOWN_EFFORT, "effort", search.effort, EFFORTS, ("search", "effort")),
+        *(
+            (
+                Code.UNKNOWN_ROAD_CLASS,
+                "class of road",
+                name,
+                ROAD_CLASSES,
+                ("travel", "roads", table, name),
+            )
+            for table in ("speeds", "real_factors")
+            for name in getattr(travel.roads, table)
+        ),
+    )
+    for code, what, word, known, at in choices:
+        if word not in known:
+            message = f"there is no {what} `{word}`"
+            notebook.add(code, message, nearest_words(word, known), at=at, value=word)
+
+
+def _check_sources(parts: Parts, notebook: Notebook) -> None:
+    """Check that the travel method has the file it needs."""
+    method = parts.travel.method
+    if method == TravelMethod.ROADS.value and not parts.writes("travel", "roads", "path"):
         notebook.add(
             Code.MISSING_ROADS,
             "the travel method is `roads` and no roads are named",
             'add a section [travel.roads] with `path = "town.osm.pbf"`',
             at=("travel", "roads", "path"),
         )
-    if parts.travel.method == TravelMethod.TABLE.value and not parts.writes("travel", "table"):
+    if method == TravelMethod.TABLE.value and not parts.writes("travel", "table"):
         notebook.add(
             Code.MISSING_TABLE,
             "the travel method is `table` and no table is named",
             'add `table = "travel.csv"`',
             at=("travel", "table"),
-        )
-    aims = [aim.value for aim in Aim]
-    if parts.search.aim not in aims:
-        notebook.add(
-            Code.UNKNOWN_AIM,
-            f"there is no aim `{parts.search.aim}`",
-            nearest_words(parts.search.aim, aims),
-            at=("search", "aim"),
-            value=parts.search.aim,
-        )
-    for table in ("speeds", "real_factors"):
-        for name in getattr(parts.travel.roads, table):
-            if name not in ROAD_CLASSES:
-                notebook.add(
-                    Code.UNKNOWN_ROAD_CLASS,
-                    f"there is no class of road `{name}`",
-                    nearest_words(name, ROAD_CLASSES),
-                    at=("travel", "roads", table, name),
-                    value=name,
-                )
-    if parts.search.effort not in EFFORTS:
-        notebook.add(
-            Code.UNKNOWN_EFFORT,
-            f"there is no effort `{parts.search.effort}`",
-            nearest_words(parts.search.effort, EFFORTS),
-            at=("search", "effort"),
-            value=parts.search.effort,
         )
 
 

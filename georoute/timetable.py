@@ -53,13 +53,17 @@ def passable(problem: Problem, shift: int, order: NDArray[np.int64]) -> NDArray[
     Nor those at its end from where no way leads to the end of the tour.
     """
     travel, place = problem.travel, problem.visits.place
-    here, end = int(problem.shifts.start_place[shift]), int(problem.shifts.end_place[shift])
+    start, end = problem.shifts.start_place[shift], problem.shifts.end_place[shift]
+    way = np.concatenate(([start], place[order], [end]))
+    if not travel.dense or (travel.time_ms[way[:-1], way[1:]] < UNREACHABLE).all():
+        return order
     kept: list[int] = []
+    here = start
     for v in order.tolist():
-        if leg_ms(travel, here, place[v]) < UNREACHABLE:
+        if travel.time_ms[here, place[v]] < UNREACHABLE:
             kept.append(v)
-            here = int(place[v])
-    while kept and leg_ms(travel, place[kept[-1]], end) >= UNREACHABLE:
+            here = place[v]
+    while kept and travel.time_ms[place[kept[-1]], end] >= UNREACHABLE:
         kept.pop()
     return np.array(kept, np.int64)
 

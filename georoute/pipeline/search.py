@@ -13,7 +13,7 @@ from georoute.pipeline.exchange_log import ExchangeLog
 from georoute.problem import MICRO, Solution
 from georoute.sequence import sequence_tour
 from georoute.split import split
-from georoute.timetable import passable, solution_cost
+from georoute.timetable import order_cost, passable
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -56,20 +56,17 @@ class _Search:
     def solution(self) -> Solution:
         return Solution(orders=tuple(self.orders))
 
-    @property
-    def cost(self) -> float:
-        """Money of all tours, without the visits that no way leads to yet."""
-        return solution_cost(self.problem, self._passable) / MICRO
+    def _driven(self, shift: int) -> NDArray[np.int64]:
+        """Return the order of a shift without the visits that no way leads to yet."""
+        return passable(self.problem, shift, self.orders[shift])
 
-    @property
-    def _passable(self) -> Solution:
-        return Solution(
-            orders=tuple(passable(self.problem, s, order) for s, order in enumerate(self.orders))
-        )
+    def _cost(self, shift: int) -> int:
+        return order_cost(self.problem, shift, self._driven(shift))
 
     def note(self, stage: str) -> None:
-        placed = sum(order.shape[0] for order in self._passable.orders)
-        self.stages.append((stage, self.cost, placed))
+        shifts = range(len(self.orders))
+        placed = sum(self._driven(s).shape[0] for s in shifts)
+        self.stages.append((stage, sum(map(self._cost, shifts)) / MICRO, placed))
 
     def split(self) -> None:
         self.progress("split", fraction=0.0)
@@ -81,14 +78,11 @@ class _Search:
     def order(self, shifts: Iterable[int], *, budget: Budget, round_number: int) -> None:
         """Put the stops of each of ``shifts`` in the best order found."""
         busy = [s for s in shifts if self.orders[s].shape[0] > 0]
+        costs = [self._cost(s) for s in range(len(self.orders))]
         for done, shift in enumerate(busy):
             if budget():
                 break
-            self.progress(
-                "order",
-                fraction=done / len(busy),
-                cost=self.cost,
-            )
+            self.progress("order", fraction=done / len(busy), cost=sum(costs) / MICRO)
             found = sequence_tour(
                 self.problem,
                 shift,
@@ -101,6 +95,7 @@ class _Search:
             for step in found.steps:
                 self.log.add(shift, step.kind, step.order_after)
             self.orders[shift] = found.order
+            costs[shift] = self._cost(shift)
             self.log.add(shift, "order", found.order)
 
     def fit(self, *, budget: Budget) -> None:

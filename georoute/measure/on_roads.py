@@ -23,7 +23,7 @@ from georoute.roads.snapping import snap
 from georoute.roads.sources import read_road_source
 from georoute.roads.speeds import SpeedProfile, default_profile
 from georoute.roads.table_source import EdgeColumns
-from georoute.roads.travel import HierarchySearch, RoadTravel
+from georoute.roads.travel import RoadTravel
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -91,7 +91,7 @@ class _WaysOnRoads:
 
     def backdrop(self, ways: Sequence[Way]) -> tuple[BackdropLine, ...]:
         """Return what to draw under tours that take these ways."""
-        return road_backdrop(self._travel.network.table, ways)
+        return road_backdrop(self._travel.network, ways)
 
 
 def profile_of(settings: RoadSettings) -> SpeedProfile:
@@ -210,7 +210,7 @@ def measure_on_roads(
             "another area?"
         )
         raise RoadError(msg)
-    travel = RoadTravel(built.network, snapped, HierarchySearch(built.hierarchy))
+    travel = RoadTravel(built.network, snapped, built.search)
     ms, mm = travel.matrix(progress=progress)
     costs = CostMatrix(
         place_ids=places.ids,

@@ -8,8 +8,8 @@ import numpy as np
 import shapely
 
 from georoute.domain.roads import BackdropKind, BackdropLine
-from georoute.projection import local_plane
 from georoute.roads.model import Access
+from georoute.roads.network import network_plane
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Sequence
@@ -19,6 +19,7 @@ if TYPE_CHECKING:
     from georoute.domain.roads import Way
     from georoute.projection import LocalPlane
     from georoute.roads.model import RoadTable
+    from georoute.roads.network import RoadNetwork
 
 __all__ = ["road_backdrop"]
 
@@ -78,12 +79,12 @@ def _merged(lines: NDArray[np.object_]) -> Sequence[shapely.LineString]:
     return [part for part in parts.tolist() if not part.is_empty]
 
 
-def road_backdrop(table: RoadTable, ways: Sequence[Way]) -> tuple[BackdropLine, ...]:
+def road_backdrop(network: RoadNetwork, ways: Sequence[Way]) -> tuple[BackdropLine, ...]:
     """Return the roads to draw under tours.
 
     Parameters
     ----------
-    table
+    network
         The roads.
     ways
         The ways of all legs, and at least one: (latitude, longitude) in degrees.
@@ -92,11 +93,14 @@ def road_backdrop(table: RoadTable, ways: Sequence[Way]) -> tuple[BackdropLine, 
     -------
     Lines in a fixed order: by kind, then by name, then from the west.
     """
-    plane = local_plane(table.node_lon, table.node_lat)
+    table = network.table
+    plane = network_plane(table)
     tours = _on_plane(plane, [way for way in ways if len(way) > 1])
-    x, y = plane.forward(table.point_lon, table.point_lat)
     owner = np.repeat(np.arange(table.start.shape[0]), np.diff(table.point_ptr))
-    lines = np.asarray(shapely.linestrings(np.column_stack([x, y]), indices=owner), np.object_)
+    lines = np.asarray(
+        shapely.linestrings(np.column_stack([network.point_x, network.point_y]), indices=owner),
+        np.object_,
+    )
     kinds = np.array(_kinds(table))
     chosen = np.flatnonzero(_kept(lines, kinds, tours))
     groups: dict[tuple[str, str], list[int]] = {}

@@ -24,6 +24,7 @@ from georoute.files import atomic_path, cache_folder, sha256_of
 from georoute.roads.hierarchy import Hierarchy, build_hierarchy
 from georoute.roads.model import RoadRemark, RoadTable
 from georoute.roads.network import RoadNetwork, build_network
+from georoute.roads.shortest import ShortestPaths
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
@@ -68,6 +69,12 @@ class BuiltRoads:
     hierarchy: Hierarchy
     kept: bool = False
     file_name: str = ""
+
+    @property
+    def search(self) -> ShortestPaths:
+        """What finds the shortest paths of the network."""
+        arcs = (self.network.tail, self.network.head, self.network.ms, self.network.mm)
+        return ShortestPaths(*arcs, nodes=self.network.nodes, hierarchy=self.hierarchy)
 
 
 def _plain(value: object) -> object:

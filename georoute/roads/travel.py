@@ -2,14 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import TYPE_CHECKING, Protocol
 
 import numpy as np
 
 from georoute.domain.run import no_progress
 from georoute.kernels.arrays import UNREACHABLE
-from georoute.roads.hierarchy import RoadPath, matrix, paths
+from georoute.roads.hierarchy import RoadPath
 from georoute.roads.legs import make_leg
 from georoute.roads.trip_ends import along_stretch, same_stretch, trip_ends
 
@@ -19,13 +18,13 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from georoute.domain.run import Progress
-    from georoute.roads.hierarchy import Hierarchy, RoadPaths
+    from georoute.roads.hierarchy import RoadPaths
     from georoute.roads.legs import RoadLeg
     from georoute.roads.model import Seeds
     from georoute.roads.network import RoadNetwork
     from georoute.roads.snapping import Snapped
 
-__all__ = ["HierarchySearch", "PathSearch", "RoadTravel"]
+__all__ = ["PathSearch", "RoadTravel"]
 
 
 class PathSearch(Protocol):
@@ -40,30 +39,6 @@ class PathSearch(Protocol):
         self, sources: Seeds, targets: Seeds, pairs: NDArray[np.int64], *, progress: Progress
     ) -> RoadPaths:
         """Return the path of each pair (source, target), shape (n, 2)."""
-
-
-@dataclass(frozen=True, slots=True)
-class HierarchySearch:
-    """Shortest paths by a contraction hierarchy of the arcs of a network."""
-
-    hierarchy: Hierarchy
-
-    def matrix(
-        self, sources: Seeds, targets: Seeds, *, progress: Progress = no_progress
-    ) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
-        """Return times and lengths, shape (sources, targets)."""
-        return matrix(self.hierarchy, sources, targets, progress=progress)
-
-    def paths(
-        self,
-        sources: Seeds,
-        targets: Seeds,
-        pairs: NDArray[np.int64],
-        *,
-        progress: Progress = no_progress,
-    ) -> RoadPaths:
-        """Return the path of each pair (source, target), shape (n, 2)."""
-        return paths(self.hierarchy, sources, targets, pairs, progress=progress)
 
 
 class RoadTravel:

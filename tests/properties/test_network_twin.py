@@ -10,10 +10,12 @@ import numpy as np
 import pytest
 
 from georoute.kernels.arrays import UNREACHABLE
+from georoute.roads.cache import BuiltRoads
 from georoute.roads.hierarchy import build_hierarchy
 from georoute.roads.network import RoadNetwork, build_network
+from georoute.roads.shortest import ShortestPaths
 from georoute.roads.snapping import Snapped, road_index, snap
-from georoute.roads.travel import HierarchySearch, RoadTravel
+from georoute.roads.travel import RoadTravel
 from tests.examples import at_most
 from tests.roads_helpers import GEOD, LAT0, LON0, random_roads
 from tests.roads_twin import PlainSearch, RoadTwin
@@ -28,9 +30,10 @@ def places_on(network: RoadNetwork, seed: int) -> Snapped:
     return snap(network, lat, lon, index=road_index(network, islands=True))
 
 
-def hierarchy_of(network: RoadNetwork) -> HierarchySearch:
+def hierarchy_of(network: RoadNetwork) -> ShortestPaths:
     arcs = (network.tail, network.head, network.ms, network.mm)
-    return HierarchySearch(build_hierarchy(*arcs, nodes=network.nodes))
+    hierarchy = build_hierarchy(*arcs, nodes=network.nodes)
+    return BuiltRoads(network=network, hierarchy=hierarchy).search
 
 
 @pytest.mark.parametrize("batch", range(BATCHES))

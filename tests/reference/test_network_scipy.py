@@ -21,7 +21,7 @@ from georoute.roads.extract import read_extract
 from georoute.roads.model import Access, RoadTable
 from georoute.roads.snapping import Snapped, snap
 from georoute.roads.speeds import default_profile
-from georoute.roads.travel import HierarchySearch, RoadTravel
+from georoute.roads.travel import RoadTravel
 from tests.roads_helpers import GEOD
 
 ROOT = Path(__file__).resolve().parents[2]
@@ -109,7 +109,7 @@ def test_times_equal_a_search_over_turns(name: str) -> None:
     lon = table.point_lon[near] + draw.uniform(-3e-4, 3e-4, PLACES)
     snapped = snap(built.network, lat, lon)
     assert not snapped.is_far.any()
-    travel = RoadTravel(built.network, snapped, HierarchySearch(built.hierarchy))
+    travel = RoadTravel(built.network, snapped, built.search)
     ms, mm = travel.matrix()
     # The product rounds each of the two pieces to a millisecond; the arcs are whole already.
     assert np.abs(ms - expected_ms(table, snapped)).max() <= 2

@@ -6,24 +6,21 @@ import numpy as np
 import pytest
 
 from georoute.kernels.arrays import UNREACHABLE
-from georoute.roads.hierarchy import build_hierarchy
+from georoute.roads.cache import build_roads
 from georoute.roads.legs import RoadLeg
 from georoute.roads.model import Access
-from georoute.roads.network import build_network
 from georoute.roads.snapping import road_index, snap
-from georoute.roads.travel import HierarchySearch, RoadTravel
+from georoute.roads.travel import RoadTravel
 from tests.roads_helpers import GEOD, LAT0, LON0, RoadDraft, town
 
 M = 1 / 110_860
 
 
 def travel_on(draft: RoadDraft, *places: tuple[float, float]) -> RoadTravel:
-    network = build_network(draft.table())
+    built = build_roads(draft.table())
     lat, lon = np.array(places).T
-    snapped = snap(network, lat, lon, index=road_index(network, islands=True))
-    arcs = (network.tail, network.head, network.ms, network.mm)
-    search = HierarchySearch(build_hierarchy(*arcs, nodes=network.nodes))
-    return RoadTravel(network, snapped, search)
+    snapped = snap(built.network, lat, lon, index=road_index(built.network, islands=True))
+    return RoadTravel(built.network, snapped, built.search)
 
 
 def leg_of(travel: RoadTravel, i: int, j: int) -> RoadLeg:
